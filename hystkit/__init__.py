@@ -1,0 +1,116 @@
+"""Switching stages with hysteresis: one circuit declaration, every formula and number from it.
+
+The public names load on first use, so ``import hystkit`` itself costs next to nothing.
+
+Examples
+--------
+>>> import hystkit as hk
+>>> stage = hk.Stage("inverting", supply="single", reference="source", output="push-pull")
+>>> design = hk.Design(
+...     stage,
+...     parts={"R_R": "10k", "R_F": "90k"},
+...     supply=hk.Supply(5.0),
+...     levels={"V_REF": 2.5},
+... )
+>>> print(f"{hk.trip_points(design).width:.3f} V")
+0.500 V
+"""
+
+from __future__ import annotations
+
+from importlib import import_module
+from typing import TYPE_CHECKING
+
+__version__ = "0.1.0"
+
+# Public name -> its home: "module" for the module itself, "module:name" for what stands in it.
+_HOME = {
+    # circuit
+    "Stage": "circuit.stage:Stage",
+    "Resistor": "circuit.elements:Resistor",
+    "Wire": "circuit.elements:Wire",
+    "Part": "circuit.parts:Part",
+    "Supply": "circuit.parts:Supply",
+    "Device": "circuit.parts:Device",
+    "Design": "circuit.design:Design",
+    "signals": "circuit.signal",
+    "save": "circuit.record:save",
+    "load": "circuit.record:load",
+    # formulas and numbers
+    "derive": "symbolic.law:derive",
+    "SwitchingLaw": "symbolic.law:SwitchingLaw",
+    "trip_points": "numeric.trips:trip_points",
+    "TripPoints": "numeric.trips:TripPoints",
+    "levels": "numeric.levels:levels",
+    "loop": "numeric.loop:loop",
+    "response": "numeric.response:response",
+    "sweep": "numeric.response:sweep",
+    # what a person sees
+    "figures": "figures",
+    "panels": "panels",
+    "export": "export",
+    # errors
+    "HystkitError": "base.errors:HystkitError",
+    "InputError": "base.errors:InputError",
+    "QuantityError": "base.errors:QuantityError",
+    "DesignError": "base.errors:DesignError",
+    "UnknownNameError": "base.errors:UnknownNameError",
+    "RecordError": "base.errors:RecordError",
+    "SignalError": "base.errors:SignalError",
+    "InfeasibleError": "base.errors:InfeasibleError",
+    "InfeasibleWidthError": "base.errors:InfeasibleWidthError",
+    "OutputExistsError": "base.errors:OutputExistsError",
+}
+
+__all__ = [*_HOME, "__version__"]
+
+if TYPE_CHECKING:
+    # The same names for type checkers and editors; a test compares the two lists.
+    from hystkit import export as export
+    from hystkit import figures as figures
+    from hystkit import panels as panels
+    from hystkit.base.errors import DesignError as DesignError
+    from hystkit.base.errors import HystkitError as HystkitError
+    from hystkit.base.errors import InfeasibleError as InfeasibleError
+    from hystkit.base.errors import InfeasibleWidthError as InfeasibleWidthError
+    from hystkit.base.errors import InputError as InputError
+    from hystkit.base.errors import OutputExistsError as OutputExistsError
+    from hystkit.base.errors import QuantityError as QuantityError
+    from hystkit.base.errors import RecordError as RecordError
+    from hystkit.base.errors import SignalError as SignalError
+    from hystkit.base.errors import UnknownNameError as UnknownNameError
+    from hystkit.circuit import signal
+    from hystkit.circuit.design import Design as Design
+    from hystkit.circuit.elements import Resistor as Resistor
+    from hystkit.circuit.elements import Wire as Wire
+    from hystkit.circuit.parts import Device as Device
+    from hystkit.circuit.parts import Part as Part
+    from hystkit.circuit.parts import Supply as Supply
+    from hystkit.circuit.record import load as load
+    from hystkit.circuit.record import save as save
+    from hystkit.circuit.stage import Stage as Stage
+    from hystkit.numeric.levels import levels as levels
+    from hystkit.numeric.loop import loop as loop
+    from hystkit.numeric.response import response as response
+    from hystkit.numeric.response import sweep as sweep
+    from hystkit.numeric.trips import TripPoints as TripPoints
+    from hystkit.numeric.trips import trip_points as trip_points
+    from hystkit.symbolic.law import SwitchingLaw as SwitchingLaw
+    from hystkit.symbolic.law import derive as derive
+
+    signals = signal
+else:
+
+    def __getattr__(name: str) -> object:
+        """Load a public name when it is first asked for."""
+        if name not in _HOME:
+            raise AttributeError(f"module {__name__!r} has no attribute {name!r}", name=name)
+        module_name, _, attribute = _HOME[name].partition(":")
+        module = import_module(f"{__name__}.{module_name}")
+        value = getattr(module, attribute) if attribute else module
+        globals()[name] = value  # the next access does not come here
+        return value
+
+
+def __dir__() -> list[str]:
+    return sorted({*__all__, *(name for name in globals() if name.startswith("__"))})

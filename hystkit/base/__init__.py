@@ -1,0 +1,1 @@
+"""What every other layer stands on: errors, engineering numbers, names, and views of results."""

@@ -1,0 +1,244 @@
+"""A stage with its values: parts, supply, device, levels and, where stated, the signal."""
+
+from __future__ import annotations
+
+from collections.abc import Mapping
+from dataclasses import dataclass, fields, replace
+from functools import cached_property
+from typing import Any
+
+from hystkit.base.errors import DesignError
+from hystkit.base.frozen import Named
+from hystkit.circuit.code import design_code
+from hystkit.circuit.design_checks import design_faults, read_parts
+from hystkit.circuit.elements import Element
+from hystkit.circuit.parts import Device, Part, Quantity, Supply
+from hystkit.circuit.signal import Signal
+from hystkit.circuit.stage import Stage
+
+PartLike = Part | Quantity
+
+
+@dataclass(frozen=True)
+class Design:
+    """A complete, frozen design; changed copies come from the ``with_...`` methods.
+
+    Parameters
+    ----------
+    stage : Stage
+        The circuit form; optional parts that `parts` names are fitted to it.
+    parts : mapping of str to Part, float or str
+        Every required part of the stage and any optional ones [Ohm].
+    supply : Supply, float or str
+        The rails; a bare number is a single supply [V].
+    device : Device, optional
+        The comparator or op-amp; ideal when left out.
+    levels : mapping of str to Part, float or str, optional
+        V_REF (required with a reference source), V_PU (V_CC unless given), V_L (0 V unless
+        given) [V]. V_OH and V_OL may be given too and then win over the device's drops.
+    signal : Signal, optional
+        Quantity <-> volts, such as `signals.Linear`.
+    name : str, default ""
+        What to call the design in reports.
+
+    Raises
+    ------
+    DesignError
+        Naming every fault of the design at once.
+
+    Examples
+    --------
+    >>> tank = Design(Stage("inverting"), {"R_T": "46k4", "R_B": "26k7", "R_F": "100k"}, supply=5.0)
+    >>> tank.with_parts(R_F="120k").parts["R_F"].value
+    120000.0
+    """
+
+    stage: Stage
+    parts: Named[Part]
+    supply: Supply
+    device: Device
+    levels: Named[Part]
+    signal: Signal | None
+    name: str
+
+    def __init__(
+        self,
+        stage: Stage,
+        parts: Mapping[str, PartLike],
+        *,
+        supply: Supply | Quantity,
+        device: Device | None = None,
+        levels: Mapping[str, PartLike] | None = None,
+        signal: Signal | None = None,
+        name: str = "",
+    ) -> None:
+        resistors, voltages, faults = read_parts(parts, levels or {})
+        supply = supply if isinstance(supply, Supply) else Supply(supply)
+        device = device or Device()
+        stage = stage.with_options(*(n for n in stage.optional if n in parts or n in stage.including))
+        faults += design_faults(stage, resistors, voltages, supply, device)
+        if faults:
+            raise DesignError.of("this design", faults)
+        ordered = {name: resistors[name] for name in stage.parts}
+        filled = (stage, Named(ordered), supply, device, Named(voltages), signal, name)
+        for field, value in zip(fields(self), filled, strict=True):
+            object.__setattr__(self, field.name, value)
+
+    @property
+    def elements(self) -> tuple[Element, ...]:
+        """The complete circuit, with the optional parts that are fitted."""
+        return self.stage.elements
+
+    @cached_property
+    def values(self) -> dict[str, float]:
+        """Value of every symbol of the full law, in [Ohm], [V] and [A]."""
+        return {
+            **{name: part.value for name, part in self.parts.items()},
+            **law_values(
+                self.stage,
+                self.device,
+                {name: part.value for name, part in self.levels.items()},
+                self.supply.v_cc,
+                self.supply.low_rail,
+            ),
+        }
+
+    def with_parts(self, **changes: PartLike | None) -> Design:
+        """Give a copy with other part values.
+
+        Parameters
+        ----------
+        **changes : Part, float, str or None
+            New values [Ohm]; a bare value keeps the part's tolerance and tempco, None takes an
+            optional part out.
+
+        Returns
+        -------
+        Design
+            The changed copy.
+        """
+        names = tuple(name for name, change in changes.items() if change is None)
+        stage = self.stage.with_options(*(n for n in self.stage.including if n not in names))
+        return replace(self, stage=stage, parts=_changed(self.parts, changes))
+
+    def with_levels(self, **changes: PartLike | None) -> Design:
+        """Give a copy with other levels.
+
+        Parameters
+        ----------
+        **changes : Part, float, str or None
+            New values [V]; a bare value keeps the tolerance, None returns to the default.
+
+        Returns
+        -------
+        Design
+            The changed copy.
+        """
+        return replace(self, levels=_changed(self.levels, changes))
+
+    def with_supply(self, **changes: Any) -> Design:
+        """Give a copy with another supply.
+
+        Parameters
+        ----------
+        **changes : float or str
+            Fields of `Supply`.
+
+        Returns
+        -------
+        Design
+            The changed copy.
+        """
+        return replace(self, supply=replace(self.supply, **changes))
+
+    def with_device(self, **changes: Any) -> Design:
+        """Give a copy with another device.
+
+        Parameters
+        ----------
+        **changes : float, str or None
+            Fields of `Device`.
+
+        Returns
+        -------
+        Design
+            The changed copy.
+        """
+        return replace(self, device=replace(self.device, **changes))
+
+    def with_signal(self, signal: Signal | None) -> Design:
+        """Give a copy with another signal description.
+
+        Parameters
+        ----------
+        signal : Signal or None
+            Quantity <-> volts.
+
+        Returns
+        -------
+        Design
+            The changed copy.
+        """
+        return replace(self, signal=signal)
+
+    def as_code(self) -> str:
+        """Write the Python that rebuilds this design.
+
+        Returns
+        -------
+        str
+            One expression that needs only ``import hystkit as hk``.
+        """
+        return design_code(self)
+
+
+def law_values(
+    stage: Stage, device: Device, given: Mapping[str, Any], v_cc: Any, v_ee: Any
+) -> dict[str, Any]:
+    """Give the value of every voltage, current and output resistance of a stage's law.
+
+    Parameters
+    ----------
+    stage : Stage
+        Tells which of them the law knows.
+    device : Device
+        Comparator or op-amp.
+    given : mapping of str to float or ndarray
+        Levels that were given [V]; the others take their defaults, which follow the rails.
+    v_cc, v_ee : float or ndarray
+        Rails [V].
+
+    Returns
+    -------
+    dict
+        Symbol name to value in [V], [A] and [Ohm].
+    """
+    rails = {"V_CC": v_cc, **({"V_EE": v_ee} if stage.supply == "split" else {})}
+    defaults = {
+        "V_PU": v_cc,
+        "V_L": 0.0,
+        "V_OH": v_cc - device.drop_high,
+        "V_OL": v_ee + device.drop_low,
+    }
+    levels = {name: given.get(name, defaults.get(name)) for name in stage.levels}
+    high = {"R_OH": device.r_high} if stage.output == "push-pull" else {"I_LK": device.leakage}
+    return {
+        **rails,
+        **levels,
+        **high,
+        "R_OL": device.r_low,
+        "V_OS": device.offset,
+        "I_BP": device.bias_plus,
+        "I_BN": device.bias_minus,
+    }
+
+
+def _changed(parts: Named[Part], changes: Mapping[str, PartLike | None]) -> dict[str, PartLike]:
+    kept: dict[str, PartLike] = {n: p for n, p in parts.items() if changes.get(n, p) is not None}
+    for name, change in changes.items():
+        if change is None:
+            continue
+        old = parts.get(name)
+        bare = old is not None and not isinstance(change, Part)
+        kept[name] = Part(change, old.tol, old.tempco) if bare and old else change  # type: ignore[arg-type]
+    return kept

@@ -1,0 +1,180 @@
+"""Do these values belong to this stage? Every fault of a design, found in one pass."""
+
+from __future__ import annotations
+
+from collections.abc import Iterator, Mapping
+from typing import TYPE_CHECKING
+
+from hystkit.base.errors import DesignError, Fault
+from hystkit.base.nearest import unknown_name_fault
+from hystkit.circuit.parts import Device, Part, Supply
+
+if TYPE_CHECKING:
+    from hystkit.circuit.parts import Quantity
+    from hystkit.circuit.stage import Stage
+
+_LEVELS = ("V_REF", "V_PU", "V_L", "V_OH", "V_OL")
+
+
+def read_parts(
+    *groups: Mapping[str, Part | Quantity],
+) -> tuple[dict[str, Part], dict[str, Part], list[Fault]]:
+    """Read parts and levels, collecting what cannot be read.
+
+    Parameters
+    ----------
+    *groups : mapping of str to Part, float or str
+        The parts, then the levels.
+
+    Returns
+    -------
+    tuple of dict, dict and list of Fault
+        What could be read of either group, and the faults.
+    """
+    faults: list[Fault] = []
+    read = [{name: _as_part(name, value, faults) for name, value in g.items()} for g in groups]
+    parts, levels = ({n: p for n, p in group.items() if p is not None} for group in read)
+    return parts, levels, faults
+
+
+def design_faults(
+    stage: Stage,
+    parts: Mapping[str, Part | None],
+    levels: Mapping[str, Part | None],
+    supply: Supply,
+    device: Device,
+) -> list[Fault]:
+    """Find everything in the values that does not fit the stage.
+
+    Parameters
+    ----------
+    stage : Stage
+        The circuit form with its optional parts.
+    parts, levels : mapping of str to Part
+        As read; None where a value could not be read, which is a fault of its own.
+    supply : Supply
+        Rails.
+    device : Device
+        Comparator or op-amp.
+
+    Returns
+    -------
+    list of Fault
+        Empty when the design is sound.
+    """
+    return [
+        *_part_faults(stage, parts),
+        *_level_faults(stage, levels),
+        *_supply_faults(stage, supply),
+        *_swing_faults(stage, levels, supply, device),
+    ]
+
+
+def _as_part(name: str, value: Part | Quantity, faults: list[Fault]) -> Part | None:
+    if isinstance(value, Part):
+        return value
+    try:
+        return Part(value)
+    except DesignError as error:
+        faults += [
+            Fault(f"{name}: {f.problem}", f.asked, f.have, f.rule, f.remedy) for f in error.faults
+        ]
+        return None
+
+
+def _part_faults(stage: Stage, parts: Mapping[str, Part | None]) -> Iterator[Fault]:
+    missing = [name for name in stage.parts if name not in parts]
+    if missing:
+        yield Fault(
+            f"{_listed(missing)} {'is' if len(missing) == 1 else 'are'} missing.",
+            asked=f"{stage.title}",
+            have=_listed(list(parts)) or "no parts",
+            rule=f"this stage needs {_listed(list(stage.parts))}",
+            remedy="parts={" + ", ".join(f'"{name}": "10k"' for name in missing) + ", ...}",
+        )
+    known = (*stage.parts, *stage.optional)
+    for name, part in parts.items():
+        if name not in known:
+            yield unknown_name_fault("part of this stage", name, tuple(dict.fromkeys(known)))
+        elif part is not None and not part.value > 0:
+            yield Fault(
+                f"{name} is not positive.",
+                asked=f"{name} = {part.value:g} Ω",
+                rule="a resistance is above zero; a part that is absent is left out",
+                remedy=f"a value such as {name} = 10k"
+                + (", or leave it out" if name in stage.optional else ""),
+            )
+
+
+def _level_faults(stage: Stage, levels: Mapping[str, Part | None]) -> Iterator[Fault]:
+    if "V_REF" in stage.levels and "V_REF" not in levels:
+        yield Fault(
+            "V_REF is missing.",
+            asked=stage.title,
+            rule="a reference source needs its voltage",
+            remedy='levels={"V_REF": 2.5}',
+        )
+    for name in levels:
+        if name in stage.levels:
+            continue
+        if name not in _LEVELS:
+            yield unknown_name_fault("level of this stage", name, stage.levels)
+            continue
+        yield Fault(
+            f"this stage has no {name}.",
+            asked=f"levels with {name}",
+            have=f"levels of the stage: {_listed(list(stage.levels))}",
+            remedy=f"leave {name} out" + _LEVEL_HINT.get(name, ""),
+        )
+
+
+_LEVEL_HINT = {
+    "V_REF": ', or choose reference="source"',
+    "V_PU": ', or choose output="open-collector"',
+    "V_L": ", or fit R_L",
+    "V_OH": ", and set the high level of an open collector with V_PU",
+}
+
+
+def _supply_faults(stage: Stage, supply: Supply) -> Iterator[Fault]:
+    if supply.split == (stage.supply == "split"):
+        return
+    have = f"V_CC = {supply.v_cc:g} V, V_EE = {supply.v_ee:g} V" if supply.split else "V_CC only"
+    yield Fault(
+        f"a stage on a {stage.supply} supply was given a {'split' if supply.split else 'single'}"
+        " one.",
+        asked=f'Stage(..., supply="{stage.supply}")',
+        have=have,
+        remedy="Supply(12, -12) with both rails"
+        if stage.supply == "split"
+        else 'Supply(5.0) with the positive rail only, or Stage(..., supply="split")',
+    )
+
+
+def _swing_faults(
+    stage: Stage, levels: Mapping[str, Part | None], supply: Supply, device: Device
+) -> Iterator[Fault]:
+    high_name = "V_OH" if stage.output == "push-pull" else "V_PU"
+    if high_name not in stage.levels:
+        return
+    drop = device.drop_high if high_name == "V_OH" else 0.0
+    high = _given(levels, high_name, supply.v_cc - drop)
+    low = _given(levels, "V_OL", supply.low_rail + device.drop_low)
+    if high <= low:
+        yield Fault(
+            f"{high_name} is not above V_OL.",
+            asked=f"{high_name} = {high:g} V, V_OL = {low:g} V",
+            have=f"V_CC = {supply.v_cc:g} V, V_EE = {supply.low_rail:g} V, "
+            f"drops {device.drop_high:g} V and {device.drop_low:g} V",
+            rule=f"{high_name} > V_OL, or there are no two output states",
+            remedy="smaller drops, a higher supply, or other levels",
+        )
+
+
+def _given(levels: Mapping[str, Part | None], name: str, default: float) -> float:
+    part = levels.get(name)
+    return default if part is None else part.value
+
+
+def _listed(names: list[str]) -> str:
+    return ", ".join(names)

@@ -1,0 +1,117 @@
+"""How wide a text is, and how values are written beside their marks."""
+
+from __future__ import annotations
+
+import math
+from functools import lru_cache
+from typing import Any
+
+from matplotlib.backends.backend_agg import RendererAgg
+
+from hystkit.base.quantity import show
+from hystkit.circuit.signal import Signal
+from hystkit.figures.theme import PX_PER_INCH, LetterSize, letters
+
+MINUS = "−"
+_UNIT_LETTERS = 10
+_RULE: Any = RendererAgg(1, 1, PX_PER_INCH)
+
+
+@lru_cache(maxsize=8192)
+def width_px(text: str, size: LetterSize = "text", bold: bool = False, math: bool = False) -> float:
+    """Return how wide a text is set [px]; `math` for one made by `theme.symbol`."""
+    return float(_RULE.get_text_width_height_descent(text, letters(size, bold), math)[0])
+
+
+def one_line(text: str, room: float, size: LetterSize = "text") -> str:
+    """Return the text on one line, ended with an ellipsis where it does not fit `room` [px]."""
+    text = " ".join(text.split())
+    if width_px(text, size) <= room:
+        return text
+    while text and width_px(f"{text}…", size) > room:
+        text = text[:-1].rstrip()
+    return f"{text}…"
+
+
+def wrapped(text: str, room: float, lines: int, size: LetterSize = "text") -> tuple[str, ...]:
+    """Return the text in at most so many lines, each within `room` [px]."""
+    words = text.split()
+    rows: list[str] = []
+    while words and len(rows) < lines - 1:
+        row = words.pop(0)
+        while words and width_px(f"{row} {words[0]}", size) <= room:
+            row = f"{row} {words.pop(0)}"
+        rows.append(one_line(row, room, size))
+    if words:
+        rows.append(one_line(" ".join(words), room, size))
+    return tuple(rows)
+
+
+def written(value: float, unit: str = "V", digits: int = 4) -> str:
+    """Return a value with its engineering prefix and a true minus sign."""
+    text = show(value, unit, digits)
+    return MINUS + text[1:] if text.startswith("-") else text
+
+
+def written_span(low: float, high: float, unit: str = "V") -> str:
+    """Return both ends of a range."""
+    return f"{written(low, unit)} to {written(high, unit)}"
+
+
+def trip_digits(value: float, width: float) -> int:
+    """Return with how many digits a trip is written so that the width stays visible in it."""
+    if not (value and width and math.isfinite(value) and math.isfinite(width)):
+        return 4
+    wanted = math.floor(math.log10(abs(value))) - math.floor(math.log10(abs(width))) + 2
+    return min(max(wanted, 4), 7)
+
+
+def short_unit(signal: Signal) -> str:
+    """Return the unit of the measurand, cut where it is too long to stand beside a mark."""
+    unit = " ".join(signal.unit.split())
+    return unit if len(unit) <= _UNIT_LETTERS else f"{unit[: _UNIT_LETTERS - 1]}…"
+
+
+def plain(value: float, decimals: int) -> str:
+    """Return a number without prefix, for units that take none and for scales."""
+    if not math.isfinite(value):
+        return "—"
+    if abs(value) >= 1e6 or decimals > 7:
+        text = f"{value:.4g}"
+    else:
+        text = f"{value:.{decimals}f}"
+    if float(text) == 0:
+        return text.lstrip("-")
+    return text.replace("-", MINUS)
+
+
+def in_measurand(signal: Signal, volts: float, width: float) -> str:
+    """Return a voltage as the measured quantity that it stands for.
+
+    Parameters
+    ----------
+    signal : Signal
+        Quantity <-> volts.
+    volts : float
+        Voltage at the signal source [V].
+    width : float
+        Distance of the trips [V]; the decimals resolve it.
+
+    Returns
+    -------
+    str
+        Such as "28.06 °C"; a dash where the sensor has no such voltage.
+    """
+    value = float(signal.quantity(volts))
+    apart = abs(float(signal.quantity(volts + abs(width) / 2)) - value) * 2
+    if not (math.isfinite(apart) and apart > 0):
+        apart = abs(value) / 100 or 1.0
+    decimals = min(max(2 - math.floor(math.log10(apart)), 0), 7) if math.isfinite(apart) else 2
+    return f"{plain(value, decimals)} {short_unit(signal)}".rstrip()
+
+
+def span_in_measurand(signal: Signal) -> str:
+    """Return the span of the signal in its own unit."""
+    low, high = signal.span
+    ends = " to ".join(f"{end:.4g}".replace("-", MINUS) for end in (low, high))
+    return f"{ends} {short_unit(signal)}".rstrip()

@@ -1,0 +1,212 @@
+"""The schematic of a stage, with part names and values."""
+
+from __future__ import annotations
+
+from collections.abc import Hashable, Iterator
+from typing import TYPE_CHECKING
+
+from matplotlib.font_manager import FontProperties
+
+from hystkit.base.quantity import code, show
+from hystkit.circuit.elements import FIXED_NODES, Resistor
+from hystkit.figures.picture import Picture
+from hystkit.figures.schematic_forms import form_sheet
+from hystkit.figures.schematic_sheet import Label, Sheet
+from hystkit.figures.schematic_symbols import draw_sheet
+from hystkit.figures.schematic_text import Lettering, Spot, fitted
+from hystkit.figures.theme import FONT, PX_PER_INCH, Theme, symbol
+
+if TYPE_CHECKING:
+    from matplotlib.text import Text
+
+    from hystkit.circuit.design import Design
+
+_MARGIN_PX = 8.0
+#: Room that is kept for values, so that moving a slider does not move the drawing.
+_ROOM = {"R": "88k88", "V": "-88.88 V"}
+#: A drawing narrower than this many units is not blown up to the full width.
+_LEAST_UNITS = 9.0
+_STROKE_PX = 1.5
+
+
+class SchematicPicture(Picture["Design"]):
+    """The circuit of a design, with IEC symbols.
+
+    Parameters
+    ----------
+    theme : str or Theme, default "light"
+        "light", "dark", or "any" for a transparent picture.
+    width_px : int, default 520
+        Width in px of the page; the height follows from the circuit.
+    """
+
+    def __init__(self, theme: str | Theme = "light", width_px: int = 520) -> None:
+        super().__init__(theme, width_px)
+        self._values: dict[str, list[Text]] = {}
+        #: What the last full redraw put on paper.
+        self.sheet: Sheet | None = None
+
+    def _layout_key(self, design: Design) -> Hashable:
+        texts = value_texts(design)
+        wide = tuple(name for name, text in texts.items() if len(text) > len(_ROOM[name[0]]))
+        lengths = tuple(len(texts[name]) for name in wide)
+        quantity = design.signal.name if design.signal else ""
+        return (design.elements, design.stage.supply, design.stage.output, quantity, wide, lengths)
+
+    def _lay_out(self, design: Design) -> None:
+        self.sheet = sheet = sheet_of(design)
+        lettering = Lettering(
+            name_px=_between(13.0, self.width_px / 36, 15.0),
+            value_px=_between(11.5, self.width_px / 40, 13.5),
+            width_of=self._width_of,
+        )
+        texts = value_texts(design)
+        spots = [spot for label in sheet.labels if (spot := self._spot(label, lettering, texts, design))]
+        fit = fitted(sheet, spots, self.width_px, margin=_MARGIN_PX, least_units=_LEAST_UNITS)
+        self._resize(fit.height_px)
+        axes = self.figure.add_axes((0.0, 0.0, 1.0, 1.0))
+        axes.set_axis_off()
+        axes.set_xlim(fit.left, fit.left + self.width_px / fit.scale)
+        axes.set_ylim(fit.top - fit.height_px / fit.scale, fit.top)
+        axes.set_autoscale_on(False)
+        points = 72 / PX_PER_INCH
+        draw_sheet(sheet, axes, colour=self.theme.line, line_width=_STROKE_PX * points)
+        self._values = {}
+        for spot in fit.spots:
+            x, y = fit.place(spot)
+            colour = self.theme.text
+            if spot.label.key in ("V_IN", "signal"):
+                colour = self.theme.signal
+            text = axes.text(
+                x, y, spot.text, ha=spot.label.align, va="baseline", color=colour,
+                fontfamily=FONT, fontsize=spot.size_px * points,
+                parse_math=spot.label.kind == "name", zorder=5,
+            )
+            if spot.label.kind == "value":
+                self._values.setdefault(spot.label.key, []).append(self._moving(text))
+
+    def _move(self, design: Design) -> None:
+        texts = value_texts(design)
+        for name, artists in self._values.items():
+            for artist in artists:
+                artist.set_text(texts[name])
+
+    def _describe(self, design: Design) -> str:
+        return "".join(_sentences(design))
+
+    def _spot(
+        self, label: Label, lettering: Lettering, texts: dict[str, str], design: Design
+    ) -> Spot | None:
+        """Turn a label into a measured text."""
+        if label.kind == "name":
+            return lettering.name(label, symbol(label.key))
+        if label.kind == "value":
+            room = max(_ROOM[label.key[0]], texts[label.key], key=len)
+            return lettering.value(label, texts[label.key], room)
+        if label.kind == "word":
+            return lettering.value(label, label.key, label.key)
+        if design.signal is None or not design.signal.name:
+            return None
+        return lettering.value(label, design.signal.name, design.signal.name)
+
+    def _width_of(self, text: str, size_px: float, is_math: bool) -> float:
+        """Measure a text in px of the page."""
+        renderer = self._canvas.get_renderer()
+        font = FontProperties(family=FONT, size=size_px * 72 / PX_PER_INCH)
+        width, _, _ = renderer.get_text_width_height_descent(text, font, ismath=is_math)
+        return float(width) * PX_PER_INCH / self.figure.dpi
+
+
+def schematic(design: Design, theme: str | Theme = "light", width_px: int = 520) -> SchematicPicture:
+    """Draw the schematic of a design.
+
+    Parameters
+    ----------
+    design : Design
+        Any built-in form with any of its optional parts, or a circuit of one's own.
+    theme : str or Theme, default "light"
+        "light", "dark", or "any" for a transparent picture.
+    width_px : int, default 520
+        Width in px of the page.
+
+    Returns
+    -------
+    SchematicPicture
+        The picture; `update` it with another design.
+    """
+    picture = SchematicPicture(theme, width_px)
+    picture.update(design)
+    return picture
+
+
+def sheet_of(design: Design) -> Sheet:
+    """Lay out the circuit of a design.
+
+    Parameters
+    ----------
+    design : Design
+        The design.
+
+    Returns
+    -------
+    Sheet
+        What stands where, in drawing units.
+    """
+    return form_sheet(
+        design.elements,
+        split=design.stage.supply == "split",
+        open_collector=design.stage.output == "open-collector",
+    )
+
+
+def value_texts(design: Design) -> dict[str, str]:
+    """Write the value of every part and voltage as it stands on the schematic.
+
+    Parameters
+    ----------
+    design : Design
+        The design.
+
+    Returns
+    -------
+    dict
+        Symbol to text: letter code of IEC 60062 for parts, volts for levels.
+    """
+    texts = {name: code(part.value) for name, part in design.parts.items()}
+    volts = {name: value for name, value in design.values.items() if name.startswith("V_")}
+    return texts | {name: show(value, "V") for name, value in volts.items()}
+
+
+_WORDS = {
+    "plus": "the plus input",
+    "minus": "the minus input",
+    "out": "the output",
+    "signal": "the signal",
+    "ground": "ground",
+}
+
+
+def _sentences(design: Design) -> Iterator[str]:
+    texts = value_texts(design)
+
+    def words(node: str) -> str:
+        if node in _WORDS:
+            return _WORDS[node]
+        if node not in FIXED_NODES:
+            return f"node {node}"
+        name = FIXED_NODES[node]
+        return f"{name} ({texts[name]})" if name in texts else "ground"
+
+    yield f"Schematic, {design.stage.title}. "
+    for element in design.elements:
+        if isinstance(element, Resistor):
+            ohms = show(design.parts[element.name].value, "Ω")
+            yield f"{element.name} {ohms} from {words(element.node_a)} to {words(element.node_b)}. "
+        else:
+            yield f"Wire from {words(element.node_a)} to {words(element.node_b)}. "
+    yield f"Supply {texts['V_CC']}"
+    yield f" and {texts['V_EE']}." if "V_EE" in texts else "."
+
+
+def _between(low: float, value: float, high: float) -> float:
+    return max(low, min(value, high))

@@ -1,0 +1,120 @@
+"""The ink of a schematic: symbols to IEC 60617 style, drawn with schemdraw into given axes."""
+
+from __future__ import annotations
+
+from typing import TYPE_CHECKING, Any
+
+from hystkit.figures.schematic_sheet import (
+    BAR,
+    BODY_WIDTH,
+    CIRCLE,
+    GROUND,
+    PIN,
+    TRIANGLE_HALF,
+    TRIANGLE_LENGTH,
+    Body,
+    Comparator,
+    Point,
+    Sheet,
+    Terminal,
+)
+
+if TYPE_CHECKING:
+    from collections.abc import Iterable
+
+    from matplotlib.axes import Axes
+
+DOT = 0.065
+_SIGN = 0.12
+_SIGN_AT = 0.32
+_DIAMOND = 0.145
+_DIAMOND_AT = TRIANGLE_LENGTH - 0.66
+
+
+def draw_sheet(sheet: Sheet, axes: Axes, *, colour: str, line_width: float) -> None:
+    """Draw everything of a schematic but its texts.
+
+    Parameters
+    ----------
+    sheet : Sheet
+        What stands where.
+    axes : Axes
+        Axes whose data units are drawing units; nothing else of matplotlib is touched.
+    colour : str
+        Colour of all lines.
+    line_width : float
+        In points.
+    """
+    # Here and not above: schemdraw loads pyplot, which only a drawn schematic should cost.
+    import schemdraw
+    from schemdraw import elements
+
+    drawing = schemdraw.Drawing(canvas=axes, show=False)
+    # Nobody's own schemdraw style may leak in.
+    for setting in ("bgcolor", "dwgbbox", "elmbbox", "mathfont"):
+        drawing.dwgparams.pop(setting, None)
+    drawing.config(unit=1.0, color=colour, lw=line_width, ls="-")
+    for body in sheet.bodies:
+        drawing.add(_resistor(elements, body))
+    strokes = [line.points for line in sheet.lines]
+    strokes += _comparator(sheet.comparator)
+    for terminal in sheet.terminals:
+        strokes += _terminal(terminal)
+    drawing.add(_stroked(elements, strokes))
+    for terminal in sheet.terminals:
+        if terminal.kind.startswith("open"):
+            left, bottom, right, top = terminal.box
+            centre = ((left + right) / 2, (bottom + top) / 2)
+            drawing.add(elements.Dot(radius=CIRCLE).at(centre).fill(None))
+    for point in sheet.dots:
+        drawing.add(elements.Dot(radius=DOT).at(point))
+    drawing.draw(canvas=axes, show=False)
+
+
+def _resistor(elements: Any, body: Body) -> Any:
+    # schemdraw's own body is 0.5 wide; ours is slimmer.
+    return elements.ResistorIEC().endpoints(body.start, body.end).scaley(2 * BODY_WIDTH / 0.5)
+
+
+def _stroked(elements: Any, strokes: Iterable[Iterable[Point]]) -> Any:
+    """Make one element of many strokes."""
+    from schemdraw.segments import Segment
+
+    element = elements.Element().at((0, 0)).theta(0)
+    element.segments.extend(Segment(tuple(points)) for points in strokes)
+    return element
+
+
+def _comparator(comparator: Comparator) -> list[tuple[Point, ...]]:
+    x, y = comparator.back
+    top, tip, bottom = (x, y + TRIANGLE_HALF), (x + TRIANGLE_LENGTH, y), (x, y - TRIANGLE_HALF)
+    left, right = x + _SIGN_AT - _SIGN, x + _SIGN_AT + _SIGN
+    strokes: list[tuple[Point, ...]] = [
+        (top, tip, bottom, top, tip),
+        ((left, y + PIN), (right, y + PIN)),
+        ((left, y - PIN), (right, y - PIN)),
+        ((x + _SIGN_AT, y - PIN - _SIGN), (x + _SIGN_AT, y - PIN + _SIGN)),
+    ]
+    if comparator.open_collector:
+        strokes += _open_collector((x + _DIAMOND_AT, y))
+    return strokes
+
+
+def _open_collector(at: Point) -> list[tuple[Point, ...]]:
+    """Draw the diamond of an open output; the bar below says that it pulls down."""
+    (x, y), d = at, _DIAMOND
+    diamond = ((x - d, y), (x, y + d), (x + d, y), (x, y - d), (x - d, y), (x, y + d))
+    return [diamond, ((x - d, y - d), (x + d, y - d))]
+
+
+def _terminal(terminal: Terminal) -> list[tuple[Point, ...]]:
+    x, y = terminal.at
+    if terminal.kind.startswith("rail"):
+        return [((x - BAR, y), (x + BAR, y))]
+    if terminal.kind == "ground":
+        widths = (BAR, BAR * 0.62, BAR * 0.24)
+        rows = (y - 0.02, y - GROUND / 2, y - GROUND)
+        return [((x, y), (x, rows[0]))] + [
+            ((x - w, row), (x + w, row)) for w, row in zip(widths, rows, strict=True)
+        ]
+    return []

@@ -1,0 +1,177 @@
+"""Texts of a schematic: how big they are, where they hang, and the scale that fits them all in."""
+
+from __future__ import annotations
+
+from collections.abc import Callable, Sequence
+from dataclasses import dataclass, replace
+
+from hystkit.figures.schematic_sheet import Box, Label, Point, Sheet
+
+#: Parts of the letter size: height of capitals, depth of a lowered index, distance of two lines.
+_CAPITAL = 0.73
+_DEPTH = 0.30
+_LINE = 1.3
+#: Between an anchor and its text [px].
+_GAP_PX = 4.0
+
+
+@dataclass(frozen=True)
+class Spot:
+    """A measured text on its anchor.
+
+    Parameters
+    ----------
+    label : Label
+        What and where.
+    text : str
+        What is written.
+    size_px, width_px : float
+        Letter size, and the width that is kept for the text [px].
+    line_px : float
+        Distance of two text lines [px].
+    """
+
+    label: Label
+    text: str
+    size_px: float
+    width_px: float
+    line_px: float
+
+    @property
+    def offset(self) -> Point:
+        """From the anchor to the aligned side and the baseline [px, upwards]."""
+        dx = {"left": _GAP_PX, "center": 0.0, "right": -_GAP_PX}[self.label.align]
+        level = self.label.level
+        capital = _CAPITAL * self.size_px
+        if level == 0:
+            return (dx, -capital / 2)
+        if level > 0:
+            return (dx, _GAP_PX + 0.2 * self.size_px + (level - 1) * self.line_px)
+        return (dx, -_GAP_PX - 1.0 - capital + (level + 1) * self.line_px)
+
+    @property
+    def box_px(self) -> Box:
+        """Outline around the anchor [px, upwards]."""
+        dx, dy = self.offset
+        shift = {"left": 0.0, "center": 0.5, "right": 1.0}[self.label.align]
+        left = dx - shift * self.width_px
+        return (left, dy - _DEPTH * self.size_px, left + self.width_px, dy + _CAPITAL * self.size_px)
+
+    def box(self, scale: float) -> Box:
+        """Outline in drawing units at a scale [px per unit]."""
+        x, y = self.label.at
+        left, bottom, right, top = (edge / scale for edge in self.box_px)
+        return (x + left, y + bottom, x + right, y + top)
+
+
+@dataclass(frozen=True)
+class Lettering:
+    """Letter sizes [px] and the ruler for texts."""
+
+    name_px: float
+    value_px: float
+    width_of: Callable[[str, float, bool], float]
+
+    def name(self, label: Label, text: str) -> Spot:
+        """Measure a symbol."""
+        width = self.width_of(text, self.name_px, "$" in text)
+        return Spot(label, text, self.name_px, width, _LINE * self.name_px)
+
+    def value(self, label: Label, text: str, room: str) -> Spot:
+        """Measure a value by the room that is kept for it."""
+        width = max(self.width_of(t, self.value_px, False) for t in (text, room))
+        return Spot(label, text, self.value_px, width, _LINE * self.name_px)
+
+
+@dataclass(frozen=True)
+class Fit:
+    """A sheet on paper.
+
+    Attributes
+    ----------
+    scale : float
+        px per drawing unit.
+    left, top : float
+        Drawing units at the left and the top edge of the paper.
+    height_px : float
+        Height of the paper.
+    spots : tuple of Spot
+        Texts that are written.
+    """
+
+    scale: float
+    left: float
+    top: float
+    height_px: float
+    spots: tuple[Spot, ...]
+
+    def place(self, spot: Spot) -> Point:
+        """Where a text's aligned side and baseline stand, in drawing units."""
+        (x, y), (dx, dy) = spot.label.at, spot.offset
+        return (x + dx / self.scale, y + dy / self.scale)
+
+
+def fitted(
+    sheet: Sheet, spots: Sequence[Spot], width_px: float, *, margin: float, least_units: float
+) -> Fit:
+    """Find the scale at which a sheet with its texts is just as wide as the paper.
+
+    Parameters
+    ----------
+    sheet : Sheet
+        What stands where.
+    spots : sequence of Spot
+        Its texts, measured.
+    width_px, margin : float
+        Width of the paper and empty edge on every side [px].
+    least_units : float
+        The paper shows at least this many drawing units.
+
+    Returns
+    -------
+    Fit
+        Scale and place on the paper.
+    """
+    firm = [spot for spot in spots if spot.label.kind != "quantity"]
+    low, high = 1.0, width_px / least_units
+    for _ in range(40):
+        scale = (low + high) / 2
+        left, _, right, _ = _outline(sheet, firm, scale)
+        if (right - left) * scale > width_px - 2 * margin:
+            high = scale
+        else:
+            low = scale
+    scale = low
+    spots = [_quantity(spot, sheet, firm, scale) if spot not in firm else spot for spot in spots]
+    left, bottom, right, top = _outline(sheet, spots, scale)
+    left = (left + right - width_px / scale) / 2
+    height = (top - bottom) * scale + 2 * margin
+    return Fit(scale, left, top + margin / scale, height, tuple(spots))
+
+
+def _outline(sheet: Sheet, spots: Sequence[Spot], scale: float) -> Box:
+    left, bottom, right, top = zip(sheet.box, *(spot.box(scale) for spot in spots), strict=True)
+    return (min(left), min(bottom), max(right), max(top))
+
+
+def _quantity(spot: Spot, sheet: Sheet, others: Sequence[Spot], scale: float) -> Spot:
+    """Start the quantity's name below or above its symbol, and cut it where something stands."""
+    beside = next(s for s in others if s.label.key == "V_IN")
+    shift = beside.box_px[0] - spot.offset[0]
+    x, y = spot.label.at
+    spot = replace(spot, label=replace(spot.label, at=(x + shift / scale, y)))
+    left, bottom, _, top = spot.box(scale)
+    taken = [body.box for body in sheet.bodies] + [s.box(scale) for s in others]
+    taken += [terminal.box for terminal in sheet.terminals] + [sheet.comparator.box]
+    taken += [
+        (min(x0, x1), min(y0, y1), max(x0, x1), max(y0, y1))
+        for line in sheet.lines
+        for (x0, y0), (x1, y1) in line.segments
+    ]
+    walls = [b[0] for b in taken if b[0] > left and b[1] < top and b[3] > bottom]
+    room = (min([*walls, sheet.box[2]]) - left) * scale - 2 * _GAP_PX
+    per_letter = spot.width_px / len(spot.text)
+    if spot.width_px <= room:
+        return spot
+    letters = max(1, int(room / per_letter) - 1)
+    return replace(spot, text=spot.text[:letters].rstrip() + "…", width_px=room)

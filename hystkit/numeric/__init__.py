@@ -1,0 +1,1 @@
+"""How much: the laws evaluated, arrays in and arrays out."""

@@ -1,0 +1,104 @@
+"""The one crossing from symbols to numbers."""
+
+from __future__ import annotations
+
+from collections.abc import Callable, Mapping
+from dataclasses import dataclass
+from functools import cached_property, lru_cache
+from typing import Any
+
+import sympy as sp
+
+from hystkit.circuit.stage import Stage
+from hystkit.symbolic.law import SwitchingLaw, derive
+from hystkit.symbolic.ledger import expand
+
+
+@dataclass(frozen=True)
+class Kernel:
+    """A stage's law as functions of numbers or arrays.
+
+    Attributes
+    ----------
+    law : SwitchingLaw
+        What it was compiled from.
+    """
+
+    law: SwitchingLaw
+
+    def trips(self, values: Mapping[str, Any]) -> tuple[Any, Any]:
+        """Evaluate both trip points.
+
+        Parameters
+        ----------
+        values : mapping of str to float or ndarray
+            Every symbol of the full law; arrays broadcast.
+
+        Returns
+        -------
+        tuple
+            Upper and lower [V], inf or NaN where the law has no value.
+        """
+        names, function = self._trips
+        upper, lower = function(*(values[name] for name in names))
+        return upper, lower
+
+    def voltages(self, state: str, values: Mapping[str, Any], signal: Any) -> dict[str, Any]:
+        """Evaluate the voltage of every free node.
+
+        Parameters
+        ----------
+        state : {"high", "low"}
+            Output state.
+        values : mapping of str to float or ndarray
+            Every symbol of the full law; arrays broadcast.
+        signal : float or ndarray
+            Signal voltage V_IN [V].
+
+        Returns
+        -------
+        dict
+            Node to voltage [V].
+        """
+        nodes, names, function = self._voltages[state]
+        given = {**values, "V_IN": signal}
+        return dict(zip(nodes, function(*(given[name] for name in names)), strict=True))
+
+    @cached_property
+    def _trips(self) -> tuple[tuple[str, ...], Callable[..., Any]]:
+        return _compiled((self.law.upper, self.law.lower))
+
+    @cached_property
+    def _voltages(self) -> dict[str, tuple[tuple[str, ...], tuple[str, ...], Callable[..., Any]]]:
+        return {
+            state: (
+                tuple(found.potentials),
+                *_compiled(
+                    tuple(expand(v, self.law.definitions) for v in found.potentials.values())
+                ),
+            )
+            for state, found in self.law.states.items()
+        }
+
+
+@lru_cache(maxsize=256)
+def kernel(stage: Stage) -> Kernel:
+    """Compile the law of a stage; stages of the same circuit share one kernel.
+
+    Parameters
+    ----------
+    stage : Stage
+        With its optional parts.
+
+    Returns
+    -------
+    Kernel
+        Compiled on first use.
+    """
+    return Kernel(derive(stage))
+
+
+def _compiled(expressions: tuple[sp.Expr, ...]) -> tuple[tuple[str, ...], Callable[..., Any]]:
+    symbols = sorted(set().union(*(e.free_symbols for e in expressions)), key=lambda s: s.name)
+    function = sp.lambdify(symbols, expressions, modules="numpy", cse=True)
+    return tuple(s.name for s in symbols), function

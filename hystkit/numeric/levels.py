@@ -1,0 +1,95 @@
+"""Everything of a design that stands on its volt axis."""
+
+from __future__ import annotations
+
+import math
+
+from hystkit.circuit.design import Design
+from hystkit.numeric.compile import kernel
+from hystkit.numeric.extremes import trip_intervals
+from hystkit.numeric.status import Status
+from hystkit.numeric.trips import TripPoints, trip_points
+from hystkit.numeric.views import Interval, Levels
+
+
+def levels(design: Design) -> Levels:
+    """Evaluate everything that stands on the volt axis of a design.
+
+    Parameters
+    ----------
+    design : Design
+        With scalar values, as all designs.
+
+    Returns
+    -------
+    Levels
+        Trips with their exact intervals, rails, output levels, reference, common-mode range and
+        signal span [V].
+
+    Examples
+    --------
+    >>> from hystkit.circuit.stage import Stage
+    >>> tank = Design(Stage("inverting"), {"R_T": "46k4", "R_B": "26k7", "R_F": "100k"}, supply=5.0)
+    >>> round(levels(tank).upper, 3)
+    2.287
+    """
+    trips = trip_points(design)
+    intervals = trip_intervals(design) or (None, None)
+    high, low = output_levels(design, trips)
+    rails = design.supply.low_rail, design.supply.v_cc
+    status = Status(int(trips.status))
+    return Levels(
+        *rails,
+        *(float(v) for v in (trips.upper, trips.lower, trips.width, trips.middle)),
+        output_high=high,
+        output_low=low,
+        upper_interval=intervals[0],
+        lower_interval=intervals[1],
+        reference=design.values.get("V_REF"),
+        common_mode=_common_mode(design),
+        signal_span=_signal_span(design),
+        signal=design.signal,
+        ok=status is Status.OK,
+        message=status.message,
+    )
+
+
+def output_levels(design: Design, trips: TripPoints) -> Interval:
+    """Output voltage in each state at the trip that leaves it.
+
+    Parameters
+    ----------
+    design : Design
+        Gives the values.
+    trips : TripPoints
+        Its trip points, scalar.
+
+    Returns
+    -------
+    tuple of float
+        High and low [V]; NaN where there is no trip.
+    """
+    compiled = kernel(design.stage)
+    at = {compiled.law.upper_state: trips.upper, compiled.law.lower_state: trips.lower}
+    high, low = (
+        float(compiled.voltages(state, design.values, at[state])["out"]) for state in ("high", "low")
+    )
+    return high, low
+
+
+def _common_mode(design: Design) -> Interval | None:
+    device = design.device
+    if device.common_mode_low is None or device.common_mode_high is None:
+        return None
+    return (
+        design.supply.low_rail + device.common_mode_low,
+        design.supply.v_cc - device.common_mode_high,
+    )
+
+
+def _signal_span(design: Design) -> Interval | None:
+    if design.signal is None:
+        return None
+    ends = sorted(float(design.signal.volts(end)) for end in design.signal.span)
+    low, high = (end if math.isfinite(end) else math.nan for end in ends)
+    return low, high

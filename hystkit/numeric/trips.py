@@ -1,0 +1,191 @@
+"""Trip points of a design, or of whole arrays of designs at once."""
+
+from __future__ import annotations
+
+from collections.abc import Sequence
+from dataclasses import dataclass
+from typing import Any
+
+import numpy as np
+from numpy.typing import ArrayLike, NDArray
+
+from hystkit.base.errors import Fault, UnknownNameError
+from hystkit.base.fields import Field, Viewed
+from hystkit.base.nearest import unknown_name_fault
+from hystkit.base.quantity import read
+from hystkit.circuit.design import Design, law_values
+from hystkit.circuit.signal import Signal
+from hystkit.numeric.compile import kernel
+from hystkit.numeric.status import Status, status_of
+
+
+@dataclass(frozen=True)
+class Measurand(Viewed):
+    """Trip points in the signal's own unit, in order of the quantity.
+
+    Attributes
+    ----------
+    low, high, width : float or ndarray
+        In `unit`; low < high also where the sensor's voltage falls.
+    low_is : {"lower", "upper"}
+        Which trip point stands at `low`.
+    unit, name : str
+        Unit and name of the quantity.
+    """
+
+    low: Any
+    high: Any
+    width: Any
+    low_is: str
+    unit: str
+    name: str
+
+    def _fields(self) -> Sequence[Field]:
+        other = "upper" if self.low_is == "lower" else "lower"
+        return (
+            Field(f"{self.name}, low", _span(self.low), self.unit, f"{self.low_is} trip point"),
+            Field(f"{self.name}, high", _span(self.high), self.unit, f"{other} trip point"),
+            Field("width", _span(self.width), self.unit),
+        )
+
+
+@dataclass(frozen=True)
+class TripPoints(Viewed):
+    """Both trip points, at the signal source.
+
+    Attributes
+    ----------
+    upper, lower, width, middle : float or ndarray
+        [V], all of one shape; NaN for impossible elements.
+    status : int or ndarray of int8
+        A `Status` code for each element, 0 where the stage switches.
+    signal : Signal or None
+        Quantity <-> volts.
+    """
+
+    upper: Any
+    lower: Any
+    width: Any
+    middle: Any
+    status: Any
+    signal: Signal | None = None
+
+    @property
+    def ok(self) -> Any:
+        """Whether each element has trip points."""
+        return self.status == Status.OK
+
+    @property
+    def measurand(self) -> Measurand | None:
+        """The same in the signal's own unit, ordered; None without a signal."""
+        if self.signal is None:
+            return None
+        lower, upper = self.signal.quantity(self.lower), self.signal.quantity(self.upper)
+        falling = self.signal.decreasing
+        low, high = (upper, lower) if falling else (lower, upper)
+        low_is = "upper" if falling else "lower"
+        return Measurand(low, high, high - low, low_is, self.signal.unit, self.signal.name)
+
+    def _fields(self) -> Sequence[Field]:
+        rows = [
+            Field(name, _span(getattr(self, name)), "V", latex=rf"V_{{\mathrm{{{name}}}}}")
+            for name in ("upper", "lower", "width", "middle")
+        ]
+        failed = int(np.count_nonzero(self.status))
+        if failed:
+            first = Status(int(np.ravel(self.status)[np.flatnonzero(self.status)[0]]))
+            rows.append(Field("impossible", f"{failed} of {np.size(self.status)}", "", first.message))
+        if self.measurand is not None:
+            rows += self.measurand._fields()
+        return rows
+
+
+def trip_points(design: Design, **overrides: ArrayLike | str) -> TripPoints:
+    """Evaluate both trip points.
+
+    Parameters
+    ----------
+    design : Design
+        Gives every value that is not overridden.
+    **overrides : float, str or array_like
+        Values of single symbols instead of those of the design: parts [Ohm], V_CC, V_EE, levels
+        [V], R_OH, R_OL [Ohm], I_LK, I_BP, I_BN [A], V_OS [V]. Arrays broadcast. Levels that
+        follow a rail follow an overridden rail too.
+
+    Returns
+    -------
+    TripPoints
+        Floats where all values are scalars, else arrays of the broadcast shape. Impossible
+        elements are NaN with their status; they do not stop the others.
+
+    Raises
+    ------
+    UnknownNameError
+        If an override names no symbol of the design's law; every such name is reported.
+    QuantityError
+        If a text cannot be read as a number.
+
+    Notes
+    -----
+    Static: exact for a resistive network with the stated device values. Moves of the trips by
+    delay and noise are outside.
+
+    Examples
+    --------
+    >>> from hystkit.circuit.stage import Stage
+    >>> tank = Design(Stage("inverting"), {"R_T": "46k4", "R_B": "26k7", "R_F": "100k"}, supply=5.0)
+    >>> [round(float(v), 3) for v in trip_points(tank, R_F=[100e3, 200e3]).width]
+    [0.725, 0.391]
+    """
+    values = overridden(design, overrides)
+    with np.errstate(all="ignore"):
+        upper, lower = kernel(design.stage).trips(values)
+        status = status_of(values, design.stage.parts, upper, lower)
+    keep = status == Status.OK
+    upper, lower = (np.where(keep, trip, np.nan) for trip in (upper, lower))
+    shown = [upper, lower, upper - lower, (upper + lower) / 2, status]
+    return TripPoints(*(array[()] for array in shown), design.signal)
+
+
+def overridden(design: Design, overrides: dict[str, Any]) -> dict[str, Any]:
+    """Give every symbol's value, some of them replaced.
+
+    Parameters
+    ----------
+    design : Design
+        Gives the others.
+    overrides : dict of str to float, str or array_like
+        As for `trip_points`.
+
+    Returns
+    -------
+    dict
+        Symbol name to float or ndarray.
+    """
+    unknown = [name for name in overrides if name not in design.values]
+    if unknown:
+        faults: list[Fault] = [unknown_name_fault("symbol", n, design.values) for n in unknown]
+        raise UnknownNameError.of("these overrides", faults)
+    given = {name: _number(name, value) for name, value in overrides.items()}
+    levels = {name: part.value for name, part in design.levels.items()}
+    v_cc = given.get("V_CC", design.supply.v_cc)
+    v_ee = given.get("V_EE", design.supply.low_rail)
+    following = law_values(design.stage, design.device, levels, v_cc, v_ee)
+    return {**design.values, **following, **given}
+
+
+def _number(name: str, value: Any) -> float | NDArray[np.float64]:
+    if isinstance(value, str):
+        unit = {"R": "Ω", "V": "V", "I": "A"}[name[0]]
+        return read(value, unit=unit, name=name)
+    return np.asarray(value, dtype=float)[()]
+
+
+def _span(values: Any) -> float | tuple[float, float]:
+    """Give a scalar as it is, of an array the lowest and the highest possible element."""
+    if np.ndim(values) == 0:
+        return float(values)
+    possible = np.asarray(values)[np.isfinite(values)]
+    if possible.size == 0:
+        return float("nan")
+    return float(possible.min()), float(possible.max())

@@ -1,0 +1,1 @@
+"""Why: node equations to switching law, exact, and its LaTeX."""

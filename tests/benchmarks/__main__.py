@@ -1,0 +1,25 @@
+"""Run every benchmark, print them side by side, fail where a promise is missed."""
+
+from __future__ import annotations
+
+import os
+import platform
+import sys
+
+from tests.benchmarks import forms, imports, slider
+
+
+def main() -> int:
+    print(f"Python {platform.python_version()}, {os.cpu_count()} cores; medians of one run\n")
+    missed = 0
+    for benchmark in (imports, forms, slider):
+        for comparison in benchmark.comparisons():
+            print(comparison, flush=True)
+            missed += not comparison.passed
+    if missed:
+        print(f"\n{missed} promised time(s) missed", file=sys.stderr)
+    return 1 if missed else 0
+
+
+if __name__ == "__main__":
+    sys.exit(main())

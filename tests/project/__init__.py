@@ -1,0 +1,1 @@
+"""Checks of the project itself: layers, names, folder, documentation."""
