@@ -102,7 +102,7 @@ class Viewed(ABC):
         if self._title:
             lines += [
                 rf"\multicolumn{{{len(columns)}}}{{l}}{{{escape_latex(self._title)}}} \\",
-                r"\hline",
+                r"\hline\noalign{\smallskip}",
             ]
         for f in fields:
             cells = [f.label_latex, f.shown_latex] + [escape_latex(f.note)] * noted
@@ -117,9 +117,9 @@ class Viewed(ABC):
         """Return the fields as an HTML table that takes its colours from the page."""
         fields = self._fields()
         noted = any(f.note for f in fields)
-        caption = f"<caption>{html.escape(self._title)}</caption>" if self._title else ""
+        caption = f"<caption {_LEFT}>{html.escape(self._title)}</caption>" if self._title else ""
         rows = "".join(_html_row(f, noted) for f in fields)
-        return f"<table>{caption}<tbody>{rows}</tbody></table>"
+        return f'<table style="color: inherit">{caption}<tbody>{rows}</tbody></table>'
 
 
 def escape_latex(text: str) -> str:
@@ -139,12 +139,14 @@ def escape_latex(text: str) -> str:
     return "".join(_LATEX.get(c, c) for c in text)
 
 
+# Notebooks align cells to the right unless each says otherwise.
+_LEFT = 'style="text-align: left; padding: 0.1em 1em 0.1em 0"'
+
+
 def _html_row(field: Field, noted: bool) -> str:
-    # Notebooks align cells to the right unless each says otherwise.
-    left = 'style="text-align: left"'
-    heading = f'<th scope="row" {left}>{html.escape(field.label)}</th>'
     cells = [field.shown] + [field.note] * noted
-    return f"<tr>{heading}{''.join(f'<td {left}>{html.escape(cell)}</td>' for cell in cells)}</tr>"
+    heading = f'<th scope="row" {_LEFT}>{html.escape(field.label)}</th>'
+    return f"<tr>{heading}{''.join(f'<td {_LEFT}>{html.escape(cell)}</td>' for cell in cells)}</tr>"
 
 
 _LATEX = {

@@ -19,9 +19,8 @@ _PREFIXED = frozenset(
     ["", "Ω", "V", "A", "W", "J", "F", "H", "S", "C", "s", "Hz", "m", "g", "N", "Pa", "bar"]
 )
 
-#: Long times stay in seconds, and plain numbers plain.
-_LARGEST_SHOWN: Mapping[str, int] = {"": 0, "s": 0}
-_SMALLEST_SHOWN: Mapping[str, int] = {"": 0}
+#: Smallest and largest prefix shown: plain numbers stay plain, and long times in seconds.
+_SHOWN: Mapping[str, tuple[int, int]] = {"": (0, 0), "s": (-15, 0)}
 
 _SPELLINGS: Mapping[str, tuple[str, ...]] = {
     "Ω": ("Ω", "\u2126", "ohm", "ohms", "Ohm"),
@@ -60,7 +59,7 @@ class Unit:
     shown: Mapping[int, str]
 
     def scale_for(self, exponent: int) -> int:
-        """Return the power of ten that suits a number whose first digit stands at `exponent`."""
+        """Return the power of ten to show a number in whose first digit stands at `exponent`."""
         return max((scale for scale in self.shown if scale <= exponent), default=min(self.shown))
 
 
@@ -77,18 +76,18 @@ def unit_of(symbol: str) -> Unit:
     if symbol in _RATIOS:
         return _ratio(symbol)
     head, slash, tail = symbol.partition("/")
-    names = {name + slash + tail for name in _SPELLINGS.get(head, (head,))}
-    suffixes = dict.fromkeys(names | {""}, 0)
+    names = [name + slash + tail for name in _SPELLINGS.get(head, (head,))]
+    suffixes = dict.fromkeys([*names, ""], 0)
     shown = {0: symbol}
     if head in _PREFIXED:
         # What is there already wins: behind a length, "m" is the metre.
-        prefixed = {p + n: e for p, e in _READ_PREFIXES.items() for n in (*names, "")}
+        prefixed = {p + n: e for p, e in _READ_PREFIXES.items() for n in [*names, ""]}
         suffixes = prefixed | suffixes
         shown = _shown_with_prefixes(symbol, head)
     if symbol in ("Ω", ""):
         suffixes["R"] = 0
     marks = {suffix: e for suffix, e in suffixes.items() if len(suffix) == 1 and suffix.isalpha()}
-    return Unit(symbol, frozenset(names | {""}), suffixes, marks, shown)
+    return Unit(symbol, frozenset([*names, ""]), suffixes, marks, shown)
 
 
 def latex_unit(text: str) -> str:
@@ -117,8 +116,7 @@ def _ratio(symbol: str) -> Unit:
 
 
 def _shown_with_prefixes(symbol: str, head: str) -> dict[int, str]:
-    lowest = _SMALLEST_SHOWN.get(head, -15)
-    highest = _LARGEST_SHOWN.get(head, 12)
+    lowest, highest = _SHOWN.get(head, (-15, 12))
     return {e: p + symbol for p, e in PREFIXES.items() if lowest <= e <= highest}
 
 

@@ -40,7 +40,11 @@ def circuit_faults(elements: Iterable[Element], output: str) -> tuple[Fault, ...
     faults += [_missing_node(node, net) for node in missing]
     if not missing:
         shorts = [*_short_faults(net)]
-        faults += shorts or [*_path_faults(net), *_floating_faults(net), *_drive_faults(net, output)]
+        faults += shorts or [
+            *_path_faults(net),
+            *_floating_faults(net),
+            *_drive_faults(net, output),
+        ]
     return tuple(faults)
 
 

@@ -75,7 +75,9 @@ class Design:
         resistors, voltages, faults = read_parts(parts, levels or {})
         supply = supply if isinstance(supply, Supply) else Supply(supply)
         device = device or Device()
-        stage = stage.with_options(*(n for n in stage.optional if n in parts or n in stage.including))
+        stage = stage.with_options(
+            *(n for n in stage.optional if n in parts or n in stage.including)
+        )
         faults += design_faults(stage, resistors, voltages, supply, device)
         if faults:
             raise DesignError.of("this design", faults)

@@ -72,7 +72,9 @@ def _reference(sense: str, reference: str, including: frozenset[str]) -> Iterato
         yield Resistor("R_T", pin, "cc")
         yield Resistor("R_B", pin, "ee")
     elif sense == "inverting":
-        yield Resistor("R_R", "ref", pin) if reference == "source" else Resistor("R_B", pin, "ground")
+        yield (
+            Resistor("R_R", "ref", pin) if reference == "source" else Resistor("R_B", pin, "ground")
+        )
     else:
         node = "ref" if reference == "source" else "ground"
         yield _fitted("R_R", node, pin, including)

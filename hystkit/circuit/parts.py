@@ -97,9 +97,7 @@ class Supply:
     v_ee: float | None = None
     tol: float = 0.0
 
-    def __init__(
-        self, v_cc: Quantity, v_ee: Quantity | None = None, tol: Quantity = 0.0
-    ) -> None:
+    def __init__(self, v_cc: Quantity, v_ee: Quantity | None = None, tol: Quantity = 0.0) -> None:
         faults: list[Fault] = []
         _set(self, "v_cc", _collect(faults, lambda: read(v_cc, unit="V", name="V_CC")))
         low = None if v_ee is None else _collect(faults, lambda: read(v_ee, unit="V", name="V_EE"))

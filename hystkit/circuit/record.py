@@ -218,7 +218,9 @@ def _parts(record: dict[str, Any] | None) -> dict[str, Part]:
 
 def _device(record: dict[str, Any] | None) -> Device:
     known = [field.name for field in fields(Device)]
-    faults = [unknown_name_fault("field of a device", n, known) for n in record or {} if n not in known]
+    faults = [
+        unknown_name_fault("field of a device", n, known) for n in record or {} if n not in known
+    ]
     if faults:
         raise RecordError.of("this device", faults)
     return Device(**(record or {}))
@@ -230,7 +232,9 @@ def _signal(record: dict[str, Any] | None) -> Signal | None:
     values = dict(record)
     kind = values.pop("kind", None)
     if kind not in _SIGNALS:
-        raise RecordError.of("this signal", [unknown_name_fault("signal kind", str(kind), list(_SIGNALS))])
+        raise RecordError.of(
+            "this signal", [unknown_name_fault("signal kind", str(kind), list(_SIGNALS))]
+        )
     return _SIGNALS[kind](**values)
 
 
@@ -266,10 +270,14 @@ def _shape_faults(record: Any) -> list[Fault]:
                 remedy="a newer hystkit, or save the design anew",
             )
         ]
-    faults = [unknown_name_fault("key of a design record", n, _KEYS) for n in record if n not in _KEYS]
+    faults = [
+        unknown_name_fault("key of a design record", n, _KEYS) for n in record if n not in _KEYS
+    ]
     for key in ("stage", "parts", "supply"):
         if key not in record:
-            faults.append(Fault(f"{key} is missing.", have=", ".join(record), remedy=f'add "{key}"'))
+            faults.append(
+                Fault(f"{key} is missing.", have=", ".join(record), remedy=f'add "{key}"')
+            )
     return faults
 
 

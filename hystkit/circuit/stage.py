@@ -68,7 +68,10 @@ class Stage:
         fitted = frozenset((including,) if isinstance(including, str) else including)
         optional = () if faults else optional_parts(sense, reference)
         if not faults:
-            faults = [unknown_name_fault("optional part", n, optional) for n in sorted(fitted - {*optional})]
+            faults = [
+                unknown_name_fault("optional part", n, optional)
+                for n in sorted(fitted - {*optional})
+            ]
         if faults:
             raise DesignError.of("this stage", faults)
         self._fill(**chosen, including=tuple(name for name in optional if name in fitted))
@@ -232,7 +235,6 @@ def _choice_faults(chosen: dict[str, str]) -> list[Fault]:
             )
         )
     return faults
-
 
 
 def _sense_faults(given: str | None, found: str | None) -> list[Fault]:

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import math
 from collections.abc import Callable, Sequence
 from dataclasses import dataclass
 from typing import Literal
@@ -163,25 +164,28 @@ class Dimension:
     inside = 2 * TIP_PX + 6
     tail = 16.0
 
-    def __init__(
-        self, page: Axes, colour: str, moving: Callable[[Line2D], Line2D], width: float = 1.2
-    ) -> None:
-        self._shafts = [moving(line(page, colour, width, GUIDE)) for _ in range(2)]
+    def __init__(self, page: Axes, colour: str, moving: Callable[[Line2D], Line2D]) -> None:
+        self._shaft = moving(line(page, colour, 1.2, GUIDE))
         self._tips = [moving(tip(page, colour)) for _ in range(2)]
 
     def colour(self, colour: str) -> None:
         """Change the colour."""
-        for artist in (*self._shafts, *self._tips):
+        for artist in (self._shaft, *self._tips):
             artist.set_color(colour)
-            artist.set_markerfacecolor(colour)
 
     def hide(self) -> None:
         """Draw nothing."""
-        for artist in (*self._shafts, *self._tips):
+        for artist in (self._shaft, *self._tips):
             artist.set_visible(False)
 
     def show(
-        self, left: float, right: float, y: float, *, reach: float | None = None, cut: Point | None = None
+        self,
+        left: float,
+        right: float,
+        y: float,
+        *,
+        reach: float | None = None,
+        cut: Point | None = None,
     ) -> None:
         """Draw from `left` to `right` at the height `y`.
 
@@ -196,25 +200,25 @@ class Dimension:
         cut : tuple of float, optional
             Part of the line that is left free for the number inside [px].
         """
-        for artist in (*self._shafts, *self._tips):
-            artist.set_visible(True)
-        if right - left >= self.inside:
+        inside = right - left >= self.inside
+        if inside:
             pieces = [(left, cut[0]), (cut[1], right)] if cut else [(left, right)]
-            point_tip(self._tips[0], (left, y), "left")
-            point_tip(self._tips[1], (right, y), "right")
         else:
             pieces = [(left - self.tail, left), (right, right + self.tail)]
-            point_tip(self._tips[0], (left, y), "right")
-            point_tip(self._tips[1], (right, y), "left")
         if reach is not None:
             pieces.append((reach, left) if reach < left else (right, reach))
-        self._draw(pieces, y)
+        self._shaft.set_data(*_parted(pieces, y))
+        for artist, x, outward in zip(self._tips, (left, right), ("left", "right"), strict=True):
+            inward = "right" if outward == "left" else "left"
+            point_tip(artist, (x, y), outward if inside else inward)
+        for artist in (self._shaft, *self._tips):
+            artist.set_visible(True)
 
-    def _draw(self, pieces: Sequence[Point], y: float) -> None:
-        """Draw all pieces with the first line, parted by gaps."""
-        xs = [x for piece in pieces for x in (*piece, np.nan)]
-        self._shafts[0].set_data(xs, [y if np.isfinite(x) else np.nan for x in xs])
-        self._shafts[1].set_visible(False)
+
+def _parted(pieces: Sequence[Point], y: float) -> tuple[list[float], list[float]]:
+    """Return level lines as one polyline with gaps."""
+    xs = [x for piece in pieces for x in (*piece, math.nan)]
+    return xs, [y] * len(xs)
 
 
 class Tag:
@@ -259,6 +263,12 @@ class Tag:
                 text.set_text(piece)
             self._widths.append([ink.width(piece) for ink, piece in zip(inks, row, strict=True)])
         return max(self._length(row) for row in self._widths)
+
+    def colour(self, colour: str) -> None:
+        """Change the colour of all pieces."""
+        for row in self._texts:
+            for text in row:
+                text.set_color(colour)
 
     def put(self, left: float, baseline: float, align: Align = "left") -> None:
         """Show the label with its left edge and its first baseline here [px]."""

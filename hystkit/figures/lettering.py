@@ -6,6 +6,7 @@ import math
 from functools import lru_cache
 from typing import Any
 
+import numpy as np
 from matplotlib.backends.backend_agg import RendererAgg
 
 from hystkit.base.quantity import show
@@ -14,7 +15,7 @@ from hystkit.figures.theme import PX_PER_INCH, LetterSize, letters
 
 MINUS = "−"
 _UNIT_LETTERS = 10
-_RULE: Any = RendererAgg(1, 1, PX_PER_INCH)
+_RULE: Any = RendererAgg(1, 1, PX_PER_INCH)  # type: ignore[no-untyped-call]
 
 
 @lru_cache(maxsize=8192)
@@ -76,16 +77,14 @@ def plain(value: float, decimals: int) -> str:
     """Return a number without prefix, for units that take none and for scales."""
     if not math.isfinite(value):
         return "—"
-    if abs(value) >= 1e6 or decimals > 7:
-        text = f"{value:.4g}"
-    else:
-        text = f"{value:.{decimals}f}"
+    long = abs(value) >= 1e6 or decimals > 7
+    text = f"{value:.4g}" if long else f"{value:.{decimals}f}"
     if float(text) == 0:
         return text.lstrip("-")
     return text.replace("-", MINUS)
 
 
-def in_measurand(signal: Signal, volts: float, width: float) -> str:
+def in_measurand(signal: Signal, volts: float, others: tuple[float, float]) -> str:
     """Return a voltage as the measured quantity that it stands for.
 
     Parameters
@@ -94,19 +93,20 @@ def in_measurand(signal: Signal, volts: float, width: float) -> str:
         Quantity <-> volts.
     volts : float
         Voltage at the signal source [V].
-    width : float
-        Distance of the trips [V]; the decimals resolve it.
+    others : tuple of float
+        Both trips [V]; the decimals tell them apart.
 
     Returns
     -------
     str
         Such as "28.06 °C"; a dash where the sensor has no such voltage.
     """
-    value = float(signal.quantity(volts))
-    apart = abs(float(signal.quantity(volts + abs(width) / 2)) - value) * 2
+    with np.errstate(all="ignore"):
+        value, low, high = (float(signal.quantity(v)) for v in (volts, *others))
+    apart = abs(high - low)
     if not (math.isfinite(apart) and apart > 0):
-        apart = abs(value) / 100 or 1.0
-    decimals = min(max(2 - math.floor(math.log10(apart)), 0), 7) if math.isfinite(apart) else 2
+        apart = abs(value) / 10 if math.isfinite(value) and value else 1.0
+    decimals = min(max(2 - math.floor(math.log10(apart)), 0), 7)
     return f"{plain(value, decimals)} {short_unit(signal)}".rstrip()
 
 

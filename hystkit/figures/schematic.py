@@ -10,13 +10,16 @@ from matplotlib.font_manager import FontProperties
 from hystkit.base.quantity import code, show
 from hystkit.circuit.elements import FIXED_NODES, Resistor
 from hystkit.figures.picture import Picture
+from hystkit.figures.schematic_custom import routed_sheet
 from hystkit.figures.schematic_forms import form_sheet
-from hystkit.figures.schematic_sheet import Label, Sheet
+from hystkit.figures.schematic_list import listed_sheet
+from hystkit.figures.schematic_sheet import Sheet
 from hystkit.figures.schematic_symbols import draw_sheet
-from hystkit.figures.schematic_text import Lettering, Spot, fitted
+from hystkit.figures.schematic_text import Fit, Lettering, Spot, fitted, is_crowded
 from hystkit.figures.theme import FONT, PX_PER_INCH, Theme, symbol
 
 if TYPE_CHECKING:
+    from matplotlib.axes import Axes
     from matplotlib.text import Text
 
     from hystkit.circuit.design import Design
@@ -26,6 +29,8 @@ _MARGIN_PX = 8.0
 _ROOM = {"R": "88k88", "V": "-88.88 V"}
 #: A drawing narrower than this many units is not blown up to the full width.
 _LEAST_UNITS = 9.0
+#: Distances of the rows of one's own circuit, in the order in which they are tried.
+_ROW_PITCHES = (1.5, 1.8, 2.1)
 _STROKE_PX = 1.5
 
 
@@ -39,6 +44,8 @@ class SchematicPicture(Picture["Design"]):
     width_px : int, default 520
         Width in px of the page; the height follows from the circuit.
     """
+
+    min_width_px = 340
 
     def __init__(self, theme: str | Theme = "light", width_px: int = 520) -> None:
         super().__init__(theme, width_px)
@@ -54,33 +61,48 @@ class SchematicPicture(Picture["Design"]):
         return (design.elements, design.stage.supply, design.stage.output, quantity, wide, lengths)
 
     def _lay_out(self, design: Design) -> None:
-        self.sheet = sheet = sheet_of(design)
         lettering = Lettering(
             name_px=_between(13.0, self.width_px / 36, 15.0),
             value_px=_between(11.5, self.width_px / 40, 13.5),
             width_of=self._width_of,
         )
-        texts = value_texts(design)
-        spots = [spot for label in sheet.labels if (spot := self._spot(label, lettering, texts, design))]
-        fit = fitted(sheet, spots, self.width_px, margin=_MARGIN_PX, least_units=_LEAST_UNITS)
+        fit = self._fit(design, lettering)
         self._resize(fit.height_px)
         axes = self.figure.add_axes((0.0, 0.0, 1.0, 1.0))
         axes.set_axis_off()
         axes.set_xlim(fit.left, fit.left + self.width_px / fit.scale)
         axes.set_ylim(fit.top - fit.height_px / fit.scale, fit.top)
         axes.set_autoscale_on(False)
-        points = 72 / PX_PER_INCH
-        draw_sheet(sheet, axes, colour=self.theme.line, line_width=_STROKE_PX * points)
+        stroke = _STROKE_PX * 72 / PX_PER_INCH
+        draw_sheet(fit.sheet, axes, colour=self.theme.line, line_width=stroke)
+        self._write(axes, fit)
+        self.sheet = fit.sheet
+
+    def _fit(self, design: Design, lettering: Lettering) -> Fit:
+        """Choose the drawing: the first one with room for its texts."""
+        for sheet in sheets_of(design):
+            spots = self._spots(sheet, lettering, design)
+            fit = fitted(sheet, spots, self.width_px, margin=_MARGIN_PX, least_units=_LEAST_UNITS)
+            if not is_crowded(fit):
+                break
+        return fit
+
+    def _write(self, axes: Axes, fit: Fit) -> None:
         self._values = {}
         for spot in fit.spots:
             x, y = fit.place(spot)
-            colour = self.theme.text
-            if spot.label.key in ("V_IN", "signal"):
-                colour = self.theme.signal
+            of_signal = spot.label.key in ("V_IN", "signal")
             text = axes.text(
-                x, y, spot.text, ha=spot.label.align, va="baseline", color=colour,
-                fontfamily=FONT, fontsize=spot.size_px * points,
-                parse_math=spot.label.kind == "name", zorder=5,
+                x,
+                y,
+                spot.text,
+                ha=spot.label.align,
+                va="baseline",
+                color=self.theme.signal if of_signal else self.theme.text,
+                fontfamily=FONT,
+                fontsize=spot.size_px * 72 / PX_PER_INCH,
+                parse_math=spot.label.kind == "name",
+                zorder=5,
             )
             if spot.label.kind == "value":
                 self._values.setdefault(spot.label.key, []).append(self._moving(text))
@@ -94,20 +116,22 @@ class SchematicPicture(Picture["Design"]):
     def _describe(self, design: Design) -> str:
         return "".join(_sentences(design))
 
-    def _spot(
-        self, label: Label, lettering: Lettering, texts: dict[str, str], design: Design
-    ) -> Spot | None:
-        """Turn a label into a measured text."""
-        if label.kind == "name":
-            return lettering.name(label, symbol(label.key))
-        if label.kind == "value":
-            room = max(_ROOM[label.key[0]], texts[label.key], key=len)
-            return lettering.value(label, texts[label.key], room)
-        if label.kind == "word":
-            return lettering.value(label, label.key, label.key)
-        if design.signal is None or not design.signal.name:
-            return None
-        return lettering.value(label, design.signal.name, design.signal.name)
+    def _spots(self, sheet: Sheet, lettering: Lettering, design: Design) -> list[Spot]:
+        """Measure the texts of a sheet."""
+        texts = value_texts(design)
+        quantity = design.signal.name if design.signal else ""
+        spots = []
+        for label in sheet.labels:
+            if label.kind == "name":
+                spots.append(lettering.name(label, symbol(label.key)))
+            elif label.kind == "value":
+                room = max(_ROOM[label.key[0]], texts[label.key], key=len)
+                spots.append(lettering.value(label, texts[label.key], room))
+            elif label.kind == "word":
+                spots.append(lettering.value(label, label.key, label.key))
+            elif quantity:
+                spots.append(lettering.value(label, quantity, quantity))
+        return spots
 
     def _width_of(self, text: str, size_px: float, is_math: bool) -> float:
         """Measure a text in px of the page."""
@@ -117,7 +141,9 @@ class SchematicPicture(Picture["Design"]):
         return float(width) * PX_PER_INCH / self.figure.dpi
 
 
-def schematic(design: Design, theme: str | Theme = "light", width_px: int = 520) -> SchematicPicture:
+def schematic(
+    design: Design, theme: str | Theme = "light", width_px: int = 520
+) -> SchematicPicture:
     """Draw the schematic of a design.
 
     Parameters
@@ -139,7 +165,7 @@ def schematic(design: Design, theme: str | Theme = "light", width_px: int = 520)
     return picture
 
 
-def sheet_of(design: Design) -> Sheet:
+def sheets_of(design: Design) -> Iterator[Sheet]:
     """Lay out the circuit of a design.
 
     Parameters
@@ -147,16 +173,25 @@ def sheet_of(design: Design) -> Sheet:
     design : Design
         The design.
 
-    Returns
-    -------
+    Yields
+    ------
     Sheet
-        What stands where, in drawing units.
+        What stands where, in drawing units. A circuit of one's own has several, from the most
+        telling to the one that needs the least width.
     """
-    return form_sheet(
-        design.elements,
-        split=design.stage.supply == "split",
-        open_collector=design.stage.output == "open-collector",
-    )
+    split = design.stage.supply == "split"
+    open_collector = design.stage.output == "open-collector"
+    if not design.stage.is_custom:
+        yield form_sheet(design.elements, split=split, open_collector=open_collector)
+        return
+    for pitch in _ROW_PITCHES:
+        yield routed_sheet(
+            design.elements, split=split, open_collector=open_collector, row_pitch=pitch
+        )
+    for columns in (2, 1):
+        yield listed_sheet(
+            design.elements, split=split, open_collector=open_collector, columns=columns
+        )
 
 
 def value_texts(design: Design) -> dict[str, str]:

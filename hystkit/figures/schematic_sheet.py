@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterable, Iterator
+from collections.abc import Iterator
 from dataclasses import dataclass
 from functools import cached_property
 from itertools import pairwise
@@ -13,6 +13,7 @@ from hystkit.circuit.elements import FIXED_NODES
 Point = tuple[float, float]
 Segment = tuple[Point, Point]
 Box = tuple[float, float, float, float]
+Align = Literal["left", "center", "right"]
 
 #: Half the length and half the width of a resistor's body.
 BODY_LENGTH = 0.5
@@ -38,14 +39,14 @@ class Body:
         Symbol of the part.
     start, end : Point
         The two ends, on one horizontal or vertical line.
-    text : {"over", "left", "right"}
-        Name and value above and below the body, or stacked on one side of it.
+    text : {"over", "above", "left", "right"}
+        Name and value above and below the body, both above it, or stacked on one side of it.
     """
 
     name: str
     start: Point
     end: Point
-    text: Literal["over", "left", "right"] = "over"
+    text: Literal["over", "above", "left", "right"] = "over"
 
     @property
     def centre(self) -> Point:
@@ -91,7 +92,7 @@ class Terminal:
     kind : {"rail up", "rail down", "ground", "open left", "open right"}
         Symbol, and the side on which the label stands.
     valued : bool
-        Whether the voltage is written beside the symbol.
+        Whether the voltage, or the quantity that the signal measures, is written beside it.
     """
 
     node: str
@@ -159,7 +160,7 @@ class Label:
     kind: Literal["name", "value", "word", "quantity"]
     key: str
     at: Point
-    align: Literal["left", "center", "right"]
+    align: Align
     level: int
 
 
@@ -173,15 +174,12 @@ class Sheet:
         The one comparator.
     bodies, lines, terminals : tuple
         Resistors, connections and terminals.
-    notes : tuple of Label
-        Texts beside those that bodies and terminals bring along.
     """
 
     comparator: Comparator
     bodies: tuple[Body, ...]
     lines: tuple[Line, ...]
     terminals: tuple[Terminal, ...]
-    notes: tuple[Label, ...] = ()
 
     @cached_property
     def dots(self) -> tuple[Point, ...]:
@@ -207,15 +205,27 @@ class Sheet:
         """All texts."""
         beside = [label for body in self.bodies for label in _body_labels(body)]
         at_ends = [label for terminal in self.terminals for label in _terminal_labels(terminal)]
-        return (*beside, *at_ends, *self.notes)
+        return (*beside, *at_ends, *self._quantity_label())
 
     @cached_property
     def box(self) -> Box:
         """Outline of everything but the texts: left, bottom, right, top."""
-        boxes = [self.comparator.box, *(b.box for b in self.bodies), *(t.box for t in self.terminals)]
+        boxes = [
+            self.comparator.box,
+            *(b.box for b in self.bodies),
+            *(t.box for t in self.terminals),
+        ]
         boxes += [(x, y, x, y) for x, y in self._joints()]
         left, bottom, right, top = zip(*boxes, strict=True)
         return (min(left), min(bottom), max(right), max(top))
+
+    def _quantity_label(self) -> Iterator[Label]:
+        """Give the measured quantity its line below the first signal terminal on the left."""
+        for terminal in self.terminals:
+            if terminal.node == "signal" and terminal.kind == "open left" and terminal.valued:
+                left, _, _, _ = terminal.box
+                yield Label("quantity", "signal", (left, terminal.at[1] - BODY_WIDTH), "left", -2)
+                return
 
     def _joints(self) -> Iterator[Point]:
         for line in self.lines:
@@ -236,59 +246,52 @@ def passes(segment: Segment, point: Point) -> bool:
     return y0 == y1 == y and min(x0, x1) < x < max(x0, x1)
 
 
-def line(*points: Point) -> Line:
-    """Connect points."""
-    return Line(tuple(points))
-
-
-def supply_pins(comparator: Comparator, *, split: bool) -> tuple[tuple[Line, ...], tuple[Terminal, ...]]:
-    """Draw the supply of the comparator itself."""
-    top, bottom = comparator.pins["cc"], comparator.pins["ee"]
-    reach = TRIANGLE_HALF + 0.1
-    up, down = (top[0], comparator.back[1] + reach), (bottom[0], comparator.back[1] - reach)
-    lines = (line(top, up), line(bottom, down))
-    return lines, (Terminal("cc", up, "rail up"), low_rail(down, split=split, valued=True))
-
-
-def low_rail(at: Point, *, split: bool, valued: bool = False) -> Terminal:
-    """Give the negative rail: a flag in a split supply, the ground symbol in a single one."""
-    return Terminal("ee", at, "rail down", valued) if split else Terminal("ee", at, "ground")
-
-
 def _near(point: Point) -> Point:
     return (round(point[0], 6), round(point[1], 6))
 
 
-def _body_labels(body: Body) -> Iterable[Label]:
+def _body_labels(body: Body) -> Iterator[Label]:
     left, bottom, right, top = body.box
     x, y = body.centre
     if body.text == "over":
         yield Label("name", body.name, (x, top), "center", 1)
         yield Label("value", body.name, (x, bottom), "center", -1)
-        return
-    at, align = ((left, y), "right") if body.text == "left" else ((right, y), "left")
-    yield Label("name", body.name, at, align, 1)  # type: ignore[arg-type]
-    yield Label("value", body.name, at, align, -1)  # type: ignore[arg-type]
+    elif body.text == "above":
+        yield Label("name", body.name, (x, top), "right", 1)
+        yield Label("value", body.name, (x, top), "left", 1)
+    elif body.text == "left":
+        yield from _stacked(body.name, (left, y), "right")
+    else:
+        yield from _stacked(body.name, (right, y), "left")
 
 
-def _terminal_labels(terminal: Terminal) -> Iterable[Label]:
-    symbol = FIXED_NODES.get(terminal.node, terminal.node)
-    left, _, right, _ = terminal.box
-    y = terminal.at[1]
+def _stacked(symbol: str, at: Point, align: Align) -> Iterator[Label]:
+    yield Label("name", symbol, at, align, 1)
+    yield Label("value", symbol, at, align, -1)
+
+
+def _terminal_labels(terminal: Terminal) -> Iterator[Label]:
     if terminal.kind == "ground":
         return
     if terminal.kind.startswith("rail"):
-        level = 1 if terminal.kind == "rail up" else -1
-        yield Label("name", symbol, terminal.at, "right" if terminal.valued else "center", level)
-        if terminal.valued:
-            yield Label("value", symbol, terminal.at, "left", level)
+        yield from _rail_labels(terminal)
         return
-    at, align = ((left, y), "right") if terminal.kind == "open left" else ((right, y), "left")
-    if terminal.node == "out":
-        yield Label("word", "out", at, align, 0)  # type: ignore[arg-type]
-    elif terminal.node == "signal":
-        yield Label("name", symbol, at, align, 0)  # type: ignore[arg-type]
-        yield Label("quantity", terminal.node, (left, y - BODY_WIDTH), "left", -2)
+    left, _, right, _ = terminal.box
+    y = terminal.at[1]
+    at: Point = (left, y) if terminal.kind == "open left" else (right, y)
+    align: Align = "right" if terminal.kind == "open left" else "left"
+    symbol = FIXED_NODES.get(terminal.node)
+    if symbol is None:
+        yield Label("word", terminal.node, at, align, 0)
+    elif terminal.node == "signal" or not terminal.valued:
+        yield Label("name", symbol, at, align, 0)
     else:
-        yield Label("name", symbol, at, align, 1)  # type: ignore[arg-type]
-        yield Label("value", symbol, at, align, -1)  # type: ignore[arg-type]
+        yield from _stacked(symbol, at, align)
+
+
+def _rail_labels(terminal: Terminal) -> Iterator[Label]:
+    symbol = FIXED_NODES[terminal.node]
+    level = 1 if terminal.kind == "rail up" else -1
+    yield Label("name", symbol, terminal.at, "right" if terminal.valued else "center", level)
+    if terminal.valued:
+        yield Label("value", symbol, terminal.at, "left", level)

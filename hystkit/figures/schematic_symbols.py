@@ -90,7 +90,8 @@ def _comparator(comparator: Comparator) -> list[tuple[Point, ...]]:
     top, tip, bottom = (x, y + TRIANGLE_HALF), (x + TRIANGLE_LENGTH, y), (x, y - TRIANGLE_HALF)
     left, right = x + _SIGN_AT - _SIGN, x + _SIGN_AT + _SIGN
     strokes: list[tuple[Point, ...]] = [
-        (top, tip, bottom, top, tip),
+        # Begun in the middle of an edge, so that all three corners are joined.
+        ((x, y), top, tip, bottom, (x, y)),
         ((left, y + PIN), (right, y + PIN)),
         ((left, y - PIN), (right, y - PIN)),
         ((x + _SIGN_AT, y - PIN - _SIGN), (x + _SIGN_AT, y - PIN + _SIGN)),
@@ -103,7 +104,8 @@ def _comparator(comparator: Comparator) -> list[tuple[Point, ...]]:
 def _open_collector(at: Point) -> list[tuple[Point, ...]]:
     """Draw the diamond of an open output; the bar below says that it pulls down."""
     (x, y), d = at, _DIAMOND
-    diamond = ((x - d, y), (x, y + d), (x + d, y), (x, y - d), (x - d, y), (x, y + d))
+    middle = (x - d / 2, y + d / 2)
+    diamond = (middle, (x, y + d), (x + d, y), (x, y - d), (x - d, y), middle)
     return [diamond, ((x - d, y - d), (x + d, y - d))]
 
 

@@ -11,6 +11,10 @@ from hystkit.figures.schematic_sheet import Box, Label, Point, Sheet
 _CAPITAL = 0.73
 _DEPTH = 0.30
 _LINE = 1.3
+#: A name that would be cut shorter than this is left out; the text beside the picture has it.
+_LEAST_LETTERS = 4
+#: Largest drawing [px per unit]; on wider paper it stands in the middle.
+_MOST_SCALE = 75.0
 #: Between an anchor and its text [px].
 _GAP_PX = 4.0
 
@@ -55,7 +59,12 @@ class Spot:
         dx, dy = self.offset
         shift = {"left": 0.0, "center": 0.5, "right": 1.0}[self.label.align]
         left = dx - shift * self.width_px
-        return (left, dy - _DEPTH * self.size_px, left + self.width_px, dy + _CAPITAL * self.size_px)
+        return (
+            left,
+            dy - _DEPTH * self.size_px,
+            left + self.width_px,
+            dy + _CAPITAL * self.size_px,
+        )
 
     def box(self, scale: float) -> Box:
         """Outline in drawing units at a scale [px per unit]."""
@@ -89,6 +98,8 @@ class Fit:
 
     Attributes
     ----------
+    sheet : Sheet
+        The sheet.
     scale : float
         px per drawing unit.
     left, top : float
@@ -99,6 +110,7 @@ class Fit:
         Texts that are written.
     """
 
+    sheet: Sheet
     scale: float
     left: float
     top: float
@@ -133,7 +145,7 @@ def fitted(
         Scale and place on the paper.
     """
     firm = [spot for spot in spots if spot.label.kind != "quantity"]
-    low, high = 1.0, width_px / least_units
+    low, high = 1.0, min(_MOST_SCALE, width_px / least_units)
     for _ in range(40):
         scale = (low + high) / 2
         left, _, right, _ = _outline(sheet, firm, scale)
@@ -146,7 +158,7 @@ def fitted(
     left, bottom, right, top = _outline(sheet, spots, scale)
     left = (left + right - width_px / scale) / 2
     height = (top - bottom) * scale + 2 * margin
-    return Fit(scale, left, top + margin / scale, height, tuple(spots))
+    return Fit(sheet, scale, left, top + margin / scale, height, tuple(spots))
 
 
 def _outline(sheet: Sheet, spots: Sequence[Spot], scale: float) -> Box:
@@ -155,23 +167,47 @@ def _outline(sheet: Sheet, spots: Sequence[Spot], scale: float) -> Box:
 
 
 def _quantity(spot: Spot, sheet: Sheet, others: Sequence[Spot], scale: float) -> Spot:
-    """Start the quantity's name below or above its symbol, and cut it where something stands."""
+    """Start the quantity's name under its symbol, and cut it where something stands."""
     beside = next(s for s in others if s.label.key == "V_IN")
     shift = beside.box_px[0] - spot.offset[0]
     x, y = spot.label.at
     spot = replace(spot, label=replace(spot.label, at=(x + shift / scale, y)))
     left, bottom, _, top = spot.box(scale)
-    taken = [body.box for body in sheet.bodies] + [s.box(scale) for s in others]
-    taken += [terminal.box for terminal in sheet.terminals] + [sheet.comparator.box]
-    taken += [
+    taken = [*obstacles(sheet), *(s.box(scale) for s in others)]
+    walls = [b[0] for b in taken if b[2] > left and b[1] < top and b[3] > bottom]
+    room = (min([*walls, sheet.box[2]]) - left) * scale - 2 * _GAP_PX
+    if spot.width_px <= room:
+        return spot
+    letters = int(room * len(spot.text) / spot.width_px) - 1
+    if letters < _LEAST_LETTERS:
+        return replace(spot, text="", width_px=0.0)
+    return replace(spot, text=spot.text[:letters].rstrip() + "…", width_px=room)
+
+
+def obstacles(sheet: Sheet) -> tuple[Box, ...]:
+    """Give the outline of everything that a text must not touch, lines as boxes of no width."""
+    lines = [
         (min(x0, x1), min(y0, y1), max(x0, x1), max(y0, y1))
         for line in sheet.lines
         for (x0, y0), (x1, y1) in line.segments
     ]
-    walls = [b[0] for b in taken if b[0] > left and b[1] < top and b[3] > bottom]
-    room = (min([*walls, sheet.box[2]]) - left) * scale - 2 * _GAP_PX
-    per_letter = spot.width_px / len(spot.text)
-    if spot.width_px <= room:
-        return spot
-    letters = max(1, int(room / per_letter) - 1)
-    return replace(spot, text=spot.text[:letters].rstrip() + "…", width_px=room)
+    for body in sheet.bodies:
+        (x0, y0), (x1, y1) = sorted((body.start, body.end))
+        lines.append((x0, y0, x1, y1))
+    marks = (*sheet.bodies, *sheet.terminals, sheet.comparator)
+    return (*lines, *(mark.box for mark in marks))
+
+
+def is_crowded(fit: Fit) -> bool:
+    """Tell whether a text touches another one or anything drawn."""
+    boxes = [spot.box(fit.scale) for spot in fit.spots if spot.text]
+    return any(
+        overlap(box, other)
+        for number, box in enumerate(boxes)
+        for other in (*boxes[:number], *obstacles(fit.sheet))
+    )
+
+
+def overlap(a: Box, b: Box) -> bool:
+    """Tell whether two outlines share more than an edge."""
+    return a[0] < b[2] and b[0] < a[2] and a[1] < b[3] and b[1] < a[3]

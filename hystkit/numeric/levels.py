@@ -72,7 +72,8 @@ def output_levels(design: Design, trips: TripPoints) -> Interval:
     compiled = kernel(design.stage)
     at = {compiled.law.upper_state: trips.upper, compiled.law.lower_state: trips.lower}
     high, low = (
-        float(compiled.voltages(state, design.values, at[state])["out"]) for state in ("high", "low")
+        float(compiled.voltages(state, design.values, at[state])["out"])
+        for state in ("high", "low")
     )
     return high, low
 

@@ -83,7 +83,12 @@ def above_band(signal: NDArray[np.float64], upper: float, lower: float) -> NDArr
 
 
 def sweep(
-    design: Design, shape: str = "triangle", *, cycles: int = 2, period: float = 1.0, points: int = 2001
+    design: Design,
+    shape: str = "triangle",
+    *,
+    cycles: int = 2,
+    period: float = 1.0,
+    points: int = 2001,
 ) -> tuple[NDArray[np.float64], NDArray[np.float64]]:
     """Give a test signal that runs through both trips.
 

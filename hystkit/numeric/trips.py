@@ -94,7 +94,9 @@ class TripPoints(Viewed):
         failed = int(np.count_nonzero(self.status))
         if failed:
             first = Status(int(np.ravel(self.status)[np.flatnonzero(self.status)[0]]))
-            rows.append(Field("impossible", f"{failed} of {np.size(self.status)}", "", first.message))
+            rows.append(
+                Field("impossible", f"{failed} of {np.size(self.status)}", "", first.message)
+            )
         if self.measurand is not None:
             rows += self.measurand._fields()
         return rows

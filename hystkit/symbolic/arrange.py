@@ -35,6 +35,9 @@ def by_source(expression: sp.Expr, sources: tuple[sp.Symbol, ...]) -> sp.Expr:
 
 def _fraction(denominator: sp.Expr, terms: list[tuple[sp.Expr, sp.Expr]]) -> sp.Expr:
     """Write terms over one denominator, what all numerators share in front."""
+    if all(share.could_extract_minus_sign() for share, _ in terms):
+        # The minus goes in front, not into each sum of resistances.
+        return -_fraction(denominator, [(-share, source) for share, source in terms])
     number = sp.ilcm(1, *(share.as_coeff_Mul()[0].q for share, _ in terms))
     common = sp.factor(sp.gcd_list([sp.expand(share * number) for share, _ in terms]))
     inner = sp.Add(*(sp.factor(share * number / common) * source for share, source in terms))

@@ -9,7 +9,7 @@ from typing import TYPE_CHECKING
 
 import sympy as sp
 
-from hystkit.base.errors import Fault, InfeasibleError, UnknownNameError
+from hystkit.base.errors import InfeasibleError, UnknownNameError
 from hystkit.base.nearest import unknown_name_fault
 from hystkit.circuit.design import Design
 from hystkit.circuit.stage import Stage
@@ -17,6 +17,7 @@ from hystkit.symbolic import solving
 from hystkit.symbolic.arrange import by_source
 from hystkit.symbolic.ledger import HIGH, LOW, Definition, Ledger, expand, restrict
 from hystkit.symbolic.network import StateLaw, solve_state
+from hystkit.symbolic.printing import fits
 from hystkit.symbolic.symbols import NON_IDEAL, meaning, symbol
 
 if TYPE_CHECKING:
@@ -152,10 +153,11 @@ class SwitchingLaw:
         Non-idealities that this law knows.
     """
 
+    # The other two fields follow from these, so that laws compare and hash by them alone.
     stage: Stage
-    definitions: tuple[Definition, ...]
-    states: dict[str, StateLaw] = field(hash=False)
     non_ideal: tuple[str, ...]
+    definitions: tuple[Definition, ...] = field(compare=False, repr=False)
+    states: dict[str, StateLaw] = field(compare=False, repr=False)
 
     @property
     def upper_state(self) -> str:
@@ -226,17 +228,9 @@ class SwitchingLaw:
         SwitchingLaw
             The law in which they, and what they made necessary, no longer stand.
         """
-        gone = [name for name in self.non_ideal if name in set(names)]
-        kept, changes = restrict(self.definitions, (symbol(name) for name in gone))
-        states = {
-            state: StateLaw(
-                law.trip.xreplace(changes),
-                {node: v.xreplace(changes) for node, v in law.potentials.items()},
-            )
-            for state, law in self.states.items()
-        }
-        used = tuple(name for name in self.non_ideal if name not in gone)
-        return SwitchingLaw(self.stage, kept, states, used)
+        given = set(names)
+        gone = tuple(name for name in self.non_ideal if name in given)
+        return _without(self, gone) if gone else self
 
     def for_design(self, design: Design) -> SwitchingLaw:
         """Give the law with those non-idealities only that the design has.
@@ -304,6 +298,33 @@ class SwitchingLaw:
 
         return derivation(self)
 
+    @cached_property
+    def rows(self) -> tuple[tuple[sp.Symbol, sp.Expr], ...]:
+        """What the law defines, in reading order: named quantities, then both trip points.
+
+        An ideal law needs no named quantities where its arranged formulas fit on a line.
+        """
+        ideal = self.ideal if self.is_ideal else None
+        if ideal is not None and fits(ideal.upper) and fits(ideal.lower):
+            return ((symbol("V_upper"), ideal.upper), (symbol("V_lower"), ideal.lower))
+        upper, lower = self.named
+        named = ((row.symbol, row.expression) for row in self.definitions)
+        return (*named, (symbol("V_upper"), upper), (symbol("V_lower"), lower))
+
+    def to_text(self) -> str:
+        """Write the law as lines of plain text, named quantities first.
+
+        Returns
+        -------
+        str
+            One line for each quantity.
+        """
+        return "\n".join(f"{left} = {right}" for left, right in self.rows)
+
+    def __str__(self) -> str:
+        """Return the text view."""
+        return self.to_text()
+
     def latex(self, variant: str = "formula", *, design: Design | None = None) -> str:
         """Write the law in LaTeX; see `hystkit.symbolic.writing.write`."""
         from hystkit.symbolic.writing import write  # writing builds on laws
@@ -347,26 +368,30 @@ def derive(subject: Stage | Design) -> SwitchingLaw:
 @lru_cache(maxsize=256)
 def _derive(stage: Stage) -> SwitchingLaw:
     ledger = Ledger()
-    states = {state: solve_state(stage, state, ledger) for state in (HIGH, LOW)}
-    changes = ledger.shared_names()
-    renamed = {
+    solved = {state: solve_state(stage, state, ledger) for state in (HIGH, LOW)}
+    states = _mapped(solved, ledger.shared_names())
+    definitions = ledger.definitions()
+    expressions = [e for law in states.values() for e in (law.trip, *law.potentials.values())]
+    used = {s.name for e in expressions for s in expand(e, definitions).free_symbols}
+    non_ideal = tuple(name for name in NON_IDEAL if name in used)
+    return SwitchingLaw(stage, non_ideal, definitions, states)
+
+
+@lru_cache(maxsize=256)
+def _without(law: SwitchingLaw, gone: tuple[str, ...]) -> SwitchingLaw:
+    kept, changes = restrict(law.definitions, (symbol(name) for name in gone))
+    left = tuple(name for name in law.non_ideal if name not in gone)
+    return SwitchingLaw(law.stage, left, kept, _mapped(law.states, changes))
+
+
+def _mapped(states: dict[str, StateLaw], changes: dict[sp.Symbol, sp.Expr]) -> dict[str, StateLaw]:
+    return {
         state: StateLaw(
             law.trip.xreplace(changes),
             {node: v.xreplace(changes) for node, v in law.potentials.items()},
         )
         for state, law in states.items()
     }
-    definitions = ledger.definitions()
-    used = {s.name for law in renamed.values() for s in expand(law.trip, definitions).free_symbols}
-    used |= {
-        s.name
-        for law in renamed.values()
-        for v in law.potentials.values()
-        for s in expand(v, definitions).free_symbols
-    }
-    return SwitchingLaw(
-        stage, definitions, renamed, tuple(name for name in NON_IDEAL if name in used)
-    )
 
 
 def _is_source(candidate: sp.Symbol) -> bool:
@@ -375,6 +400,3 @@ def _is_source(candidate: sp.Symbol) -> bool:
 
 def _in_state(row: Definition) -> str:
     return row.meaning if row.state is None else f"{row.meaning}, output {row.state}"
-
-
-__all__ = ["Definition", "Fault", "Sensitivity", "SwitchingLaw", "TripFormulas", "derive"]

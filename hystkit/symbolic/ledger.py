@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Iterable
 from dataclasses import dataclass, replace
+from itertools import count
 
 import sympy as sp
 
@@ -48,7 +49,8 @@ class Ledger:
     """Collects the definitions of both output states; equal ones are kept once."""
 
     def __init__(self) -> None:
-        self._rows: dict[sp.Symbol, tuple[str, Definition]] = {}
+        # Symbol -> (what it was asked for as, its name without the mark of the state, definition).
+        self._rows: dict[sp.Symbol, tuple[str, str, Definition]] = {}
 
     def define(
         self, base: str, state: str | None, expression: sp.Expr, meaning: str, unit: str
@@ -73,28 +75,35 @@ class Ledger:
         """
         if expression.is_Atom:
             return expression
-        for known, (known_base, row) in self._rows.items():
+        for known, (known_base, stem, row) in self._rows.items():
             if known_base == base and row.expression == expression:
                 if row.state != state:
-                    self._rows[known] = (base, replace(row, state=None))
+                    self._rows[known] = (base, stem, replace(row, state=None))
                 return known
-        new = symbol(base + _SUFFIX[state])
-        self._rows[new] = (base, Definition(new, expression, meaning, unit, state))
+        stem = self._free_stem(base, _SUFFIX[state])
+        new = symbol(stem + _SUFFIX[state])
+        self._rows[new] = (base, stem, Definition(new, expression, meaning, unit, state))
         return new
+
+    def _free_stem(self, base: str, suffix: str) -> str:
+        """Number what would otherwise take the name of another quantity."""
+        numbered = (base + (str(number) if number > 1 else "") for number in count(1))
+        return next(stem for stem in numbered if symbol(stem + suffix) not in self._rows)
 
     def shared_names(self) -> dict[sp.Symbol, sp.Expr]:
         """Give the shorter names of what turned out equal in both states."""
         taken = {known.name for known in self._rows}
-        return {
-            known: symbol(base)
-            for known, (base, row) in self._rows.items()
-            if row.state is None and base not in taken and not base.endswith("_")
-        }
+        changes: dict[sp.Symbol, sp.Expr] = {}
+        for known, (base, stem, row) in self._rows.items():
+            if row.state is None and stem not in taken and not base.endswith("_"):
+                changes[known] = symbol(stem)
+                taken.add(stem)
+        return changes
 
     def definitions(self) -> tuple[Definition, ...]:
         """Give all definitions, each after those that it uses."""
         changes = self.shared_names()
-        return tuple(row.mapped(changes) for _, row in self._rows.values())
+        return tuple(row.mapped(changes) for _, _, row in self._rows.values())
 
 
 def expand(expression: sp.Expr, definitions: Iterable[Definition]) -> sp.Expr:

@@ -21,7 +21,6 @@ from hystkit.symbolic.ledger import HIGH, LOW, Ledger
 from hystkit.symbolic.symbols import symbol
 
 
-
 class StateLaw(NamedTuple):
     """What holds in one output state, in terms of the law's definitions."""
 
@@ -116,7 +115,9 @@ class Reduction:
         product = sp.Mul(*(s.branch.r for s in sources if s.branch.r is not None))
         weights = [_weight(index, sources) for index in range(len(sources))]
         total = sp.Add(*weights)
-        constant = sp.Add(*(w * s.potential.constant for w, s in zip(weights, sources, strict=True)))
+        constant = sp.Add(
+            *(w * s.potential.constant for w, s in zip(weights, sources, strict=True))
+        )
         gain = sp.Add(*(w * s.potential.gain for w, s in zip(weights, sources, strict=True)))
         return Potential((constant - product * injection) / total, gain / total), product / total
 
@@ -153,11 +154,13 @@ class Reduction:
             self.sources.setdefault(other, []).append(Source(branch.in_series(z), potential))
             return
         loading = 1 + z * sp.Add(*(branch.g for _, branch in links))
-        k = self.define(
-            f"K_{_tag(node)}", loading, f"loading factor of the node {node}", "1"
-        )
+        k = self.define(f"K_{_tag(node)}", loading, f"loading factor of the node {node}", "1")
         for other, branch in links:
-            scaled = Branch.resistor(branch.r * k) if branch.r is not None else Branch(None, branch.g / k)
+            scaled = (
+                Branch.resistor(branch.r * k)
+                if branch.r is not None
+                else Branch(None, branch.g / k)
+            )
             self.sources.setdefault(other, []).append(Source(scaled, potential))
         self._mesh(node, links, lambda a, b: a.g * b.g * z / k)
 
@@ -170,7 +173,9 @@ class Reduction:
             self.links.append(Link(one, two, Branch.resistor(first.r + second.r)))
             return
         if len(links) > 1:
-            total = self.define(f"S_{_tag(node)}", total, f"sum of conductances at the node {node}", "S")
+            total = self.define(
+                f"S_{_tag(node)}", total, f"sum of conductances at the node {node}", "S"
+            )
         for other, branch in links:
             if injection != 0:
                 share = injection * branch.g / total
@@ -190,7 +195,9 @@ class Reduction:
         for link in self.links:
             if node in link[:2]:
                 other = link.other(node)
-                found[other] = _parallel(found[other], link.branch) if other in found else link.branch
+                found[other] = (
+                    _parallel(found[other], link.branch) if other in found else link.branch
+                )
         return tuple(found.items())
 
     def back_substitute(self, known: dict[str, sp.Expr]) -> dict[str, sp.Expr]:

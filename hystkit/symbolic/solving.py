@@ -28,8 +28,7 @@ def solve_pair(
     # Conductances enter node equations linearly: unknown resistors are sought as 1/R.
     unknowns = [sp.Dummy(s.name) for s in (one, two)]
     stand_in = {
-        s: 1 / u if s.name.startswith("R") else u
-        for s, u in zip((one, two), unknowns, strict=True)
+        s: 1 / u if s.name.startswith("R") else u for s, u in zip((one, two), unknowns, strict=True)
     }
     equations = [
         sp.numer(sp.together((trip - symbol(wanted)).xreplace(stand_in)))

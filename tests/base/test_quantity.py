@@ -11,7 +11,7 @@ import pytest
 from hypothesis import given
 from hypothesis import strategies as st
 
-from hystkit.base.errors import QuantityError
+from hystkit.base.errors import Fault, QuantityError
 from hystkit.base.quantity import (
     TOLERANCE_LETTERS,
     code,
@@ -175,12 +175,18 @@ def test_garbage_is_refused_with_what_was_asked_what_was_found_and_what_to_do(
 
 
 @given(st.text() | st.from_regex(r"[-+0-9.,eEkKmMuµΩR% ']{1,12}", fullmatch=True))
-def test_text_gives_a_finite_number_or_an_error_and_nothing_else(text: str) -> None:
+def test_text_gives_a_finite_number_or_a_complete_error(text: str) -> None:
     for unit in ("Ω", "%", "m³", ""):
-        try:
-            assert math.isfinite(read(text, unit=unit))
-        except QuantityError as error:
-            assert error.faults[0].have
+        number, faults = outcome(text, unit)
+        assert math.isfinite(number) != bool(faults)
+        assert all(fault.asked and fault.have and fault.remedy for fault in faults)
+
+
+def outcome(text: str, unit: str) -> tuple[float, tuple[Fault, ...]]:
+    try:
+        return read(text, unit=unit), ()
+    except QuantityError as error:
+        return math.nan, error.faults
 
 
 @given(st.floats(allow_nan=False, allow_infinity=False))
