@@ -1,1 +1,1 @@
-"""What is wired: elements, stage, device, supply, signal, preferred numbers, design and its record."""
+"""What is wired: elements, stage, device, supply, signal, preferred numbers, design, record."""

@@ -121,7 +121,7 @@ class Design:
         """
         names = tuple(name for name, change in changes.items() if change is None)
         stage = self.stage.with_options(*(n for n in self.stage.including if n not in names))
-        return replace(self, stage=stage, parts=_changed(self.parts, changes))
+        return self._with(stage=stage, parts=_changed(self.parts, changes))
 
     def with_levels(self, **changes: PartLike | None) -> Design:
         """Give a copy with other levels.
@@ -136,7 +136,7 @@ class Design:
         Design
             The changed copy.
         """
-        return replace(self, levels=_changed(self.levels, changes))
+        return self._with(levels=_changed(self.levels, changes))
 
     def with_supply(self, **changes: Any) -> Design:
         """Give a copy with another supply.
@@ -151,7 +151,7 @@ class Design:
         Design
             The changed copy.
         """
-        return replace(self, supply=replace(self.supply, **changes))
+        return self._with(supply=replace(self.supply, **changes))
 
     def with_device(self, **changes: Any) -> Design:
         """Give a copy with another device.
@@ -166,7 +166,7 @@ class Design:
         Design
             The changed copy.
         """
-        return replace(self, device=replace(self.device, **changes))
+        return self._with(device=replace(self.device, **changes))
 
     def with_signal(self, signal: Signal | None) -> Design:
         """Give a copy with another signal description.
@@ -181,7 +181,10 @@ class Design:
         Design
             The changed copy.
         """
-        return replace(self, signal=signal)
+        return self._with(signal=signal)
+
+    def _with(self, **changes: Any) -> Design:
+        return replace(self, **changes)
 
     def as_code(self) -> str:
         """Write the Python that rebuilds this design.
@@ -241,6 +244,5 @@ def _changed(parts: Named[Part], changes: Mapping[str, PartLike | None]) -> dict
         if change is None:
             continue
         old = parts.get(name)
-        bare = old is not None and not isinstance(change, Part)
-        kept[name] = Part(change, old.tol, old.tempco) if bare and old else change  # type: ignore[arg-type]
+        kept[name] = change if old is None or isinstance(change, Part) else old.with_value(change)
     return kept

@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 import math
-from dataclasses import dataclass
+from dataclasses import dataclass, fields
 from typing import TYPE_CHECKING, Any, Protocol, runtime_checkable
 
 from hystkit.base.errors import Fault, QuantityError, SignalError
@@ -44,9 +44,9 @@ class Signal(Protocol):
 
 @dataclass(frozen=True)
 class Linear:
-    """A sensor whose voltage is a straight line over the measured quantity.
+    r"""A sensor whose voltage is a straight line over the measured quantity.
 
-    .. math:: V = V_0 + s \\, x
+    .. math:: V = V_0 + s \, x
 
     Parameters
     ----------
@@ -91,18 +91,16 @@ class Linear:
         name: str = "signal",
     ) -> None:
         try:
-            numbers = {
-                "per_unit": read(per_unit, name="per_unit"),
-                "at_zero": read(at_zero, unit="V", name="at_zero"),
-                "span": tuple(read(end, name="span") for end in span),
-            }
+            slope = read(per_unit, name="per_unit")
+            offset = read(at_zero, unit="V", name="at_zero")
+            ends = tuple(read(end, name="span") for end in span)
         except QuantityError as error:
             raise SignalError.of("this signal", error.faults) from None
-        faults = _linear_faults(**numbers)
+        faults = _linear_faults(slope, ends)
         if faults:
             raise SignalError.of("this signal", faults)
-        for field, value in (*numbers.items(), ("unit", unit), ("name", name)):
-            object.__setattr__(self, field, value)
+        for field, value in zip(fields(self), (slope, offset, ends, unit, name), strict=True):
+            object.__setattr__(self, field.name, value)
 
     @property
     def decreasing(self) -> bool:
@@ -140,7 +138,7 @@ class Linear:
         return (volts - self.at_zero) / self.per_unit
 
 
-def _linear_faults(per_unit: float, at_zero: float, span: tuple[float, ...]) -> list[Fault]:
+def _linear_faults(per_unit: float, span: tuple[float, ...]) -> list[Fault]:
     faults = []
     if per_unit == 0 or not math.isfinite(per_unit):
         faults.append(

@@ -31,20 +31,23 @@ def levels(design: Design) -> Levels:
     >>> from hystkit.circuit.stage import Stage
     >>> tank = Design(Stage("inverting"), {"R_T": "46k4", "R_B": "26k7", "R_F": "100k"}, supply=5.0)
     >>> round(levels(tank).upper, 3)
-    2.287
+    2.286
     """
     trips = trip_points(design)
-    intervals = trip_intervals(design) or (None, None)
+    upper_interval, lower_interval = trip_intervals(design) or (None, None)
     high, low = output_levels(design, trips)
-    rails = design.supply.low_rail, design.supply.v_cc
     status = Status(int(trips.status))
     return Levels(
-        *rails,
-        *(float(v) for v in (trips.upper, trips.lower, trips.width, trips.middle)),
+        v_ee=design.supply.low_rail,
+        v_cc=design.supply.v_cc,
+        upper=float(trips.upper),
+        lower=float(trips.lower),
+        width=float(trips.width),
+        middle=float(trips.middle),
         output_high=high,
         output_low=low,
-        upper_interval=intervals[0],
-        lower_interval=intervals[1],
+        upper_interval=upper_interval,
+        lower_interval=lower_interval,
         reference=design.values.get("V_REF"),
         common_mode=_common_mode(design),
         signal_span=_signal_span(design),

@@ -144,9 +144,8 @@ def trip_points(design: Design, **overrides: ArrayLike | str) -> TripPoints:
         upper, lower = kernel(design.stage).trips(values)
         status = status_of(values, design.stage.parts, upper, lower)
     keep = status == Status.OK
-    upper, lower = (np.where(keep, trip, np.nan) for trip in (upper, lower))
-    shown = [upper, lower, upper - lower, (upper + lower) / 2, status]
-    return TripPoints(*(array[()] for array in shown), design.signal)
+    upper, lower = (np.where(keep, trip, np.nan)[()] for trip in (upper, lower))
+    return TripPoints(upper, lower, upper - lower, (upper + lower) / 2, status[()], design.signal)
 
 
 def overridden(design: Design, overrides: dict[str, Any]) -> dict[str, Any]:

@@ -1,4 +1,4 @@
-"""Formulas in the form that an engineer writes: by source, factored, one fraction where it is one."""
+"""Formulas in the form that an engineer writes: by source, factored, few fractions."""
 
 from __future__ import annotations
 

@@ -68,8 +68,8 @@ class TripFormulas:
 
         Examples
         --------
-        >>> derive(Stage("inverting", reference="source")).ideal.solve_for("V_REF", "R_R")[0]["R_R"]
-        R_F*(V_lower - V_upper)/(V_OL - V_OH + V_upper - V_lower)
+        >>> derive(Stage("inverting", reference="source")).solve_for("V_REF", "R_R")[0]["R_R"]
+        R_F*(-V_lower + V_upper)/(V_OH - V_OL + V_lower - V_upper)
         """
         self._known(one, two)
         found = solving.solve_pair(self.upper, self.lower, symbol(one), symbol(two))
@@ -84,9 +84,9 @@ class TripFormulas:
         return found
 
     def sensitivity(self, name: str) -> Sensitivity:
-        """Relative change of each trip for a relative change of a part or level.
+        r"""Relative change of each trip for a relative change of a part or level.
 
-        .. math:: S = \\frac{x}{f} \\frac{\\partial f}{\\partial x}
+        .. math:: S = \frac{x}{f} \frac{\partial f}{\partial x}
 
         Parameters
         ----------

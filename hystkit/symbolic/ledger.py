@@ -144,7 +144,7 @@ def restrict(
     tuple
         The definitions that remain, and the replacements for expressions that use them.
     """
-    changes: dict[sp.Expr, sp.Expr] = {zero: sp.S.Zero for zero in zeros}
+    changes: dict[sp.Expr, sp.Expr] = dict.fromkeys(zeros, sp.S.Zero)
     kept = []
     for row in definitions:
         reduced = row.mapped(changes)

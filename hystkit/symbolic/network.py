@@ -73,7 +73,7 @@ class Link(NamedTuple):
     branch: Branch
 
     def other(self, node: str) -> str:
-        """The end that is not `node`."""
+        """Give the end that is not `node`."""
         return self.node_b if node == self.node_a else self.node_a
 
 
@@ -168,9 +168,9 @@ class Reduction:
         self, node: str, links: tuple[tuple[str, Branch], ...], injection: sp.Expr
     ) -> None:
         total = sp.Add(*(branch.g for _, branch in links))
-        if len(links) == 2 and injection == 0 and all(b.r is not None for _, b in links):
+        if len(links) == 2 and injection == 0 and links[1][1].r is not None:
             (one, first), (two, second) = links
-            self.links.append(Link(one, two, Branch.resistor(first.r + second.r)))
+            self.links.append(Link(one, two, first.in_series(second.r)))
             return
         if len(links) > 1:
             total = self.define(

@@ -36,8 +36,8 @@ def solve_pair(
     ]
     found = []
     for solution in _solve(equations, unknowns):
-        values = [solution.get(u) for u in unknowns]
-        if any(v is None or v == 0 or v.has(*unknowns) for v in values):
+        values = [solution.get(u, sp.S.Zero) for u in unknowns]
+        if any(v == 0 or v.has(*unknowns) for v in values):
             continue
         found.append(
             {

@@ -8,17 +8,17 @@ import sympy as sp
 
 from hystkit.circuit.elements import FIXED_NODES, OUTPUT_NODE
 from hystkit.circuit.netlist import Netlist, netlist
-from hystkit.symbolic.ledger import HIGH, LOW
 from hystkit.symbolic.law import SwitchingLaw
+from hystkit.symbolic.ledger import HIGH, LOW
 from hystkit.symbolic.network import device_source, fixed
 from hystkit.symbolic.printing import fits, write_expression, write_lines
-from hystkit.symbolic.symbols import NON_IDEAL, latex_name, node_symbol, symbol
+from hystkit.symbolic.symbols import NON_IDEAL, latex_name, node_symbol
 
 _ORDER = ("plus", "minus")
 
 
 class Step(NamedTuple):
-    """One step of a derivation.
+    r"""One step of a derivation.
 
     Attributes
     ----------
@@ -26,7 +26,7 @@ class Step(NamedTuple):
         What is done.
     equations : tuple of str
         LaTeX lines for ``align*``, each with its alignment mark; continued lines begin with
-        ``&\\quad``.
+        ``&\quad``.
     """
 
     title: str

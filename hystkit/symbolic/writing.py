@@ -10,7 +10,7 @@ from hystkit.base.quantity import show_latex
 from hystkit.circuit.design import Design
 from hystkit.symbolic.law import SwitchingLaw
 from hystkit.symbolic.steps import derivation, equation
-from hystkit.symbolic.symbols import meaning, symbol
+from hystkit.symbolic.symbols import meaning
 from hystkit.symbolic.tables import PartsAndTrips, exact_values
 
 VARIANTS = ("formula", "derivation", "numbers", "table")
