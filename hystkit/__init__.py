@@ -31,7 +31,7 @@ _HOME = {
     "Wire": "circuit.elements:Wire",
     "Part": "circuit.parts:Part",
     "Supply": "circuit.parts:Supply",
-    "Device": "circuit.parts:Device",
+    "Device": "circuit.device:Device",
     "Design": "circuit.design:Design",
     "signals": "circuit.signal",
     "save": "circuit.record:save",
@@ -83,7 +83,7 @@ if TYPE_CHECKING:
     from hystkit.circuit.design import Design as Design
     from hystkit.circuit.elements import Resistor as Resistor
     from hystkit.circuit.elements import Wire as Wire
-    from hystkit.circuit.parts import Device as Device
+    from hystkit.circuit.device import Device as Device
     from hystkit.circuit.parts import Part as Part
     from hystkit.circuit.parts import Supply as Supply
     from hystkit.circuit.record import load as load

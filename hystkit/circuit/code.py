@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from collections.abc import Mapping
 from dataclasses import fields
 from typing import TYPE_CHECKING, Any
 
@@ -11,7 +12,8 @@ from hystkit.circuit.elements import Element, Resistor
 
 if TYPE_CHECKING:
     from hystkit.circuit.design import Design
-    from hystkit.circuit.parts import Device, Part, Supply
+    from hystkit.circuit.device import Device
+    from hystkit.circuit.parts import Part, Supply
     from hystkit.circuit.stage import Stage
 
 
@@ -92,11 +94,15 @@ def _supply_code(supply: Supply) -> str:
 
 def _device_code(device: Device) -> str:
     given = [
-        f"{f.name}={getattr(device, f.name)!r}"
+        f"{f.name}={_plain(getattr(device, f.name))!r}"
         for f in fields(device)
         if getattr(device, f.name) != f.default
     ]
     return f"hk.Device({', '.join(given)})"
+
+
+def _plain(value: Any) -> Any:
+    return dict(value) if isinstance(value, Mapping) else value
 
 
 def _signal_code(signal: Any) -> str:

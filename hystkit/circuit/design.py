@@ -11,8 +11,10 @@ from hystkit.base.errors import DesignError
 from hystkit.base.frozen import Named
 from hystkit.circuit.code import design_code
 from hystkit.circuit.design_checks import design_faults, read_parts
+from hystkit.circuit.device import Device
 from hystkit.circuit.elements import Element
-from hystkit.circuit.parts import Device, Part, Quantity, Supply
+from hystkit.circuit.parts import Part, Supply
+from hystkit.circuit.reading import Quantity
 from hystkit.circuit.signal import Signal
 from hystkit.circuit.stage import Stage
 
@@ -98,7 +100,7 @@ class Design:
             **{name: part.value for name, part in self.parts.items()},
             **law_values(
                 self.stage,
-                self.device,
+                self.device.law_fields,
                 {name: part.value for name, part in self.levels.items()},
                 self.supply.v_cc,
                 self.supply.low_rail,
@@ -198,7 +200,7 @@ class Design:
 
 
 def law_values(
-    stage: Stage, device: Device, given: Mapping[str, Any], v_cc: Any, v_ee: Any
+    stage: Stage, device: Mapping[str, Any], given: Mapping[str, Any], v_cc: Any, v_ee: Any
 ) -> dict[str, Any]:
     """Give the value of every voltage, current and output resistance of a stage's law.
 
@@ -206,8 +208,8 @@ def law_values(
     ----------
     stage : Stage
         Tells which of them the law knows.
-    device : Device
-        Comparator or op-amp.
+    device : mapping of str to float or ndarray
+        Device fields that enter the law, as ``Device.law_fields``.
     given : mapping of str to float or ndarray
         Levels that were given [V]; the others take their defaults, which follow the rails.
     v_cc, v_ee : float or ndarray
@@ -222,19 +224,21 @@ def law_values(
     defaults = {
         "V_PU": v_cc,
         "V_L": 0.0,
-        "V_OH": v_cc - device.drop_high,
-        "V_OL": v_ee + device.drop_low,
+        "V_OH": v_cc - device["drop_high"],
+        "V_OL": v_ee + device["drop_low"],
     }
     levels = {name: given.get(name, defaults.get(name)) for name in stage.levels}
-    high = {"R_OH": device.r_high} if stage.output == "push-pull" else {"I_LK": device.leakage}
+    high = (
+        {"R_OH": device["r_high"]} if stage.output == "push-pull" else {"I_LK": device["leakage"]}
+    )
     return {
         **rails,
         **levels,
         **high,
-        "R_OL": device.r_low,
-        "V_OS": device.offset,
-        "I_BP": device.bias_plus,
-        "I_BN": device.bias_minus,
+        "R_OL": device["r_low"],
+        "V_OS": device["offset"],
+        "I_BP": device["bias_plus"],
+        "I_BN": device["bias_minus"],
     }
 
 

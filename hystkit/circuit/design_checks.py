@@ -7,10 +7,11 @@ from typing import TYPE_CHECKING
 
 from hystkit.base.errors import DesignError, Fault
 from hystkit.base.nearest import unknown_name_fault
-from hystkit.circuit.parts import Device, Part, Supply
+from hystkit.circuit.device import Device
+from hystkit.circuit.parts import Part, Supply
 
 if TYPE_CHECKING:
-    from hystkit.circuit.parts import Quantity
+    from hystkit.circuit.reading import Quantity
     from hystkit.circuit.stage import Stage
 
 _LEVELS = ("V_REF", "V_PU", "V_L", "V_OH", "V_OL")

@@ -12,8 +12,9 @@ from typing import Any
 from hystkit.base.errors import Fault, HystkitError, OutputExistsError, RecordError
 from hystkit.base.nearest import unknown_name_fault
 from hystkit.circuit.design import Design
+from hystkit.circuit.device import Device
 from hystkit.circuit.elements import Element, Resistor, Wire
-from hystkit.circuit.parts import Device, Part, Supply
+from hystkit.circuit.parts import Part, Supply
 from hystkit.circuit.signal import Linear, Signal
 from hystkit.circuit.stage import Stage
 
@@ -130,7 +131,7 @@ def to_record(design: Design) -> dict[str, Any]:
         "stage": _stage_record(design.stage),
         "parts": {name: asdict(part) for name, part in design.parts.items()},
         "supply": asdict(design.supply),
-        "device": asdict(design.device),
+        "device": {**vars(design.device), "limits": dict(design.device.limits)},
         "levels": {name: asdict(part) for name, part in design.levels.items()},
         "signal": None if signal is None else {"kind": kind, **vars(signal)},
     }

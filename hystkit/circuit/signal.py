@@ -12,7 +12,7 @@ from hystkit.base.quantity import read
 if TYPE_CHECKING:
     from collections.abc import Sequence
 
-    from hystkit.circuit.parts import Quantity
+    from hystkit.circuit.reading import Quantity
 
 
 @runtime_checkable

@@ -20,12 +20,12 @@ def toleranced(design: Design) -> dict[str, Interval]:
     Parameters
     ----------
     design : Design
-        Tolerances stand at its parts, levels and supply.
+        Tolerances stand at its parts, levels and supply, limits at its device.
 
     Returns
     -------
     dict
-        Symbol name to (lowest, highest) in [Ohm] or [V].
+        Symbol or device field to (lowest, highest).
     """
     found = {**design.parts, **design.levels}
     box = {name: _ends(p.value, p.tol) for name, p in found.items() if p.tol}
@@ -33,7 +33,32 @@ def toleranced(design: Design) -> dict[str, Interval]:
         box["V_CC"] = _ends(design.supply.v_cc, design.supply.tol)
         if design.supply.split:
             box["V_EE"] = _ends(design.supply.low_rail, design.supply.tol)
-    return box
+    limits = {n: pair for n, pair in design.device.limits.items() if pair[0] < pair[1]}
+    return {**box, **{n: pair for n, pair in limits.items() if acts(design, n)}}
+
+
+def acts(design: Design, name: str) -> bool:
+    """Tell whether a device field enters the law of a design.
+
+    Parameters
+    ----------
+    design : Design
+        Levels that are given replace the drops; an open collector has no high side of its own.
+    name : str
+        A field of `LAW_FIELDS`.
+
+    Returns
+    -------
+    bool
+        Whether the trips depend on it.
+    """
+    push_pull = design.stage.output == "push-pull"
+    return {
+        "drop_high": push_pull and "V_OH" not in design.levels,
+        "drop_low": "V_OL" not in design.levels,
+        "r_high": push_pull,
+        "leakage": not push_pull,
+    }.get(name, True)
 
 
 def trip_intervals(design: Design) -> tuple[Interval, Interval] | None:

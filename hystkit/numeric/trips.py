@@ -9,11 +9,12 @@ from typing import Any
 import numpy as np
 from numpy.typing import ArrayLike, NDArray
 
-from hystkit.base.errors import Fault, UnknownNameError
+from hystkit.base.errors import UnknownNameError
 from hystkit.base.fields import Field, Viewed
 from hystkit.base.nearest import unknown_name_fault
 from hystkit.base.quantity import read
 from hystkit.circuit.design import Design, law_values
+from hystkit.circuit.device import LAW_FIELDS, UNITS
 from hystkit.circuit.signal import Signal
 from hystkit.numeric.compile import kernel
 from hystkit.numeric.status import Status, status_of
@@ -111,8 +112,9 @@ def trip_points(design: Design, **overrides: ArrayLike | str) -> TripPoints:
         Gives every value that is not overridden.
     **overrides : float, str or array_like
         Values of single symbols instead of those of the design: parts [Ohm], V_CC, V_EE, levels
-        [V], R_OH, R_OL [Ohm], I_LK, I_BP, I_BN [A], V_OS [V]. Arrays broadcast. Levels that
-        follow a rail follow an overridden rail too.
+        [V], R_OH, R_OL [Ohm], I_LK, I_BP, I_BN [A], V_OS [V]; or of device fields that enter the
+        law, such as drop_low. Arrays broadcast. Levels that follow a rail or a drop follow an
+        overridden one too.
 
     Returns
     -------
@@ -163,21 +165,22 @@ def overridden(design: Design, overrides: dict[str, Any]) -> dict[str, Any]:
     dict
         Symbol name to float or ndarray.
     """
-    unknown = [name for name in overrides if name not in design.values]
-    if unknown:
-        faults: list[Fault] = [unknown_name_fault("symbol", n, design.values) for n in unknown]
+    known = (*design.values, *LAW_FIELDS)
+    faults = [unknown_name_fault("symbol", n, known) for n in overrides if n not in known]
+    if faults:
         raise UnknownNameError.of("these overrides", faults)
     given = {name: _number(name, value) for name, value in overrides.items()}
+    device = {name: given.pop(name, value) for name, value in design.device.law_fields.items()}
     levels = {name: part.value for name, part in design.levels.items()}
     v_cc = given.get("V_CC", design.supply.v_cc)
     v_ee = given.get("V_EE", design.supply.low_rail)
-    following = law_values(design.stage, design.device, levels, v_cc, v_ee)
+    following = law_values(design.stage, device, levels, v_cc, v_ee)
     return {**design.values, **following, **given}
 
 
 def _number(name: str, value: Any) -> float | NDArray[np.float64]:
     if isinstance(value, str):
-        unit = {"R": "Ω", "V": "V", "I": "A"}[name[0]]
+        unit = UNITS.get(name) or {"R": "Ω", "V": "V", "I": "A"}[name[0]]
         return read(value, unit=unit, name=name)
     return np.asarray(value, dtype=float)[()]
 

@@ -1,0 +1,162 @@
+"""The switching device: a comparator or an op-amp, as its datasheet describes it."""
+
+from __future__ import annotations
+
+from collections.abc import Mapping
+from dataclasses import dataclass, fields
+
+from hystkit.base.errors import DesignError, Fault
+from hystkit.base.frozen import Named
+from hystkit.base.nearest import unknown_name_fault
+from hystkit.base.quantity import read
+from hystkit.circuit.reading import Quantity, collect, set_frozen
+
+#: Device fields that may be below zero; all the others are magnitudes.
+_SIGNED = {"offset", "bias_plus", "bias_minus", "leakage", "common_mode_low", "common_mode_high"}
+#: Device fields that enter the switching law, and may therefore have limits.
+LAW_FIELDS = (
+    "drop_high",
+    "drop_low",
+    "r_high",
+    "r_low",
+    "leakage",
+    "offset",
+    "bias_plus",
+    "bias_minus",
+)
+UNITS = {
+    "drop_high": "V",
+    "drop_low": "V",
+    "r_high": "Ω",
+    "r_low": "Ω",
+    "leakage": "A",
+    "offset": "V",
+    "bias_plus": "A",
+    "bias_minus": "A",
+    "delay": "s",
+    "common_mode_low": "V",
+    "common_mode_high": "V",
+    "offset_drift": "V",
+}
+
+
+@dataclass(frozen=True)
+class Device:
+    """The comparator or op-amp, as its datasheet describes it.
+
+    Parameters
+    ----------
+    drop_high, drop_low : float or str, default 0
+        Distance of the output from V_CC when high, from V_EE when low [V].
+    r_high, r_low : float or str, default 0
+        Output resistance in each state [Ohm]; r_high has no meaning in an open collector.
+    leakage : float or str, default 0
+        Current into the output pin of an open collector that is off [A].
+    offset : float or str, default 0
+        Input offset voltage: the stage switches at v(plus) - v(minus) = offset [V].
+    bias_plus, bias_minus : float or str, default 0
+        Currents that flow into the plus and the minus pin [A].
+    delay : float or str, default 0
+        Propagation delay [s].
+    common_mode_low : float or str, optional
+        Where the common-mode input range begins, above V_EE [V]; may be negative.
+    common_mode_high : float or str, optional
+        Where it ends, below V_CC [V]; may be negative. Not stated when left out.
+    offset_drift : float or str, default 0
+        Magnitude of the offset's temperature drift [V/K].
+    limits : mapping of str to pair, optional
+        Lowest and highest value of fields that enter the law, as the datasheet guarantees them;
+        the field itself is the typical value between them.
+    name : str, default ""
+        Generic name, such as "open-collector quad comparator class".
+
+    Raises
+    ------
+    DesignError
+        Naming every field that is not finite, has the wrong unit or must not be negative.
+    """
+
+    drop_high: float = 0.0
+    drop_low: float = 0.0
+    r_high: float = 0.0
+    r_low: float = 0.0
+    leakage: float = 0.0
+    offset: float = 0.0
+    bias_plus: float = 0.0
+    bias_minus: float = 0.0
+    delay: float = 0.0
+    common_mode_low: float | None = None
+    common_mode_high: float | None = None
+    offset_drift: float = 0.0
+    limits: Named[tuple[float, float]] = Named()  # noqa: RUF009 - immutable
+    name: str = ""
+
+    # Text such as "20m" is accepted for every number; the fields hold floats.
+    def __init__(
+        self,
+        drop_high: Quantity = 0.0,
+        drop_low: Quantity = 0.0,
+        r_high: Quantity = 0.0,
+        r_low: Quantity = 0.0,
+        leakage: Quantity = 0.0,
+        offset: Quantity = 0.0,
+        bias_plus: Quantity = 0.0,
+        bias_minus: Quantity = 0.0,
+        delay: Quantity = 0.0,
+        common_mode_low: Quantity | None = None,
+        common_mode_high: Quantity | None = None,
+        offset_drift: Quantity = 0.0,
+        limits: Mapping[str, tuple[Quantity, Quantity]] | None = None,
+        name: str = "",
+    ) -> None:
+        given = locals()
+        faults: list[Fault] = []
+        for field in fields(self):
+            value = given[field.name]
+            if field.name in UNITS and value is not None:
+                value = _device_number(faults, field.name, value)
+            set_frozen(self, field.name, value)
+        set_frozen(self, "limits", _read_limits(faults, limits or {}, self))
+        if faults:
+            raise DesignError.of("this device", faults)
+
+    @property
+    def law_fields(self) -> dict[str, float]:
+        """What enters the switching law, by field name."""
+        return {name: getattr(self, name) for name in LAW_FIELDS}
+
+
+def _device_number(faults: list[Fault], name: str, value: Quantity) -> float:
+    number = collect(faults, lambda: read(value, unit=UNITS[name], name=name))
+    if name not in _SIGNED and number < 0:
+        faults.append(
+            Fault(
+                f"{name} is negative.",
+                asked=f"{name} = {value!r}",
+                rule=f"{name} >= 0 [{UNITS[name]}]",
+                remedy="the magnitude that the datasheet states",
+            )
+        )
+    return number
+
+
+def _read_limits(
+    faults: list[Fault], limits: Mapping[str, tuple[Quantity, Quantity]], device: Device
+) -> Named[tuple[float, float]]:
+    read_pairs = {}
+    for name, pair in limits.items():
+        if name not in LAW_FIELDS:
+            faults.append(unknown_name_fault("device field with limits", name, LAW_FIELDS))
+            continue
+        low, high = (_device_number(faults, name, end) for end in pair)
+        if not low <= getattr(device, name) <= high:
+            faults.append(
+                Fault(
+                    f"the limits of {name} do not enclose its typical value.",
+                    asked=f"limits {low:g} to {high:g}, {name} = {getattr(device, name):g}",
+                    rule="lowest <= typical <= highest",
+                    remedy=f"give {name} itself a value between its limits",
+                )
+            )
+        read_pairs[name] = (low, high)
+    return Named(read_pairs)

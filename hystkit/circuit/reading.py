@@ -1,0 +1,48 @@
+"""How the frozen descriptions of this layer read their numbers: all faults together."""
+
+from __future__ import annotations
+
+import math
+from collections.abc import Callable
+from typing import Any
+
+from hystkit.base.errors import Fault, QuantityError
+
+Quantity = float | int | str
+
+
+def collect(faults: list[Fault], reader: Callable[[], float]) -> float:
+    """Read a number; what cannot be read becomes one more fault.
+
+    Parameters
+    ----------
+    faults : list of Fault
+        Where a fault is added.
+    reader : callable
+        Gives the number or raises a `QuantityError`.
+
+    Returns
+    -------
+    float
+        The number, NaN where it could not be read.
+    """
+    try:
+        return reader()
+    except QuantityError as error:
+        faults.extend(error.faults)
+        return math.nan
+
+
+def set_frozen(target: object, name: str, value: Any) -> None:
+    """Set a field of a frozen dataclass while it is built.
+
+    Parameters
+    ----------
+    target : object
+        Under construction.
+    name : str
+        Field.
+    value : object
+        Its final value.
+    """
+    object.__setattr__(target, name, value)
