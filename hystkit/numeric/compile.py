@@ -13,6 +13,9 @@ from hystkit.circuit.stage import Stage
 from hystkit.symbolic.law import SwitchingLaw, derive
 from hystkit.symbolic.ledger import expand
 
+#: Names of the arguments in order, and the function of them.
+Compiled = tuple[tuple[str, ...], Callable[..., Any]]
+
 
 @dataclass(frozen=True)
 class Kernel:
@@ -65,15 +68,15 @@ class Kernel:
         return dict(zip(nodes, function(*(given[name] for name in names)), strict=True))
 
     @cached_property
-    def _trips(self) -> tuple[tuple[str, ...], Callable[..., Any]]:
-        return _compiled((self.law.upper, self.law.lower))
+    def _trips(self) -> Compiled:
+        return compiled((self.law.upper, self.law.lower))
 
     @cached_property
     def _voltages(self) -> dict[str, tuple[tuple[str, ...], tuple[str, ...], Callable[..., Any]]]:
         return {
             state: (
                 tuple(found.potentials),
-                *_compiled(
+                *compiled(
                     tuple(expand(v, self.law.definitions) for v in found.potentials.values())
                 ),
             )
@@ -98,7 +101,19 @@ def kernel(stage: Stage) -> Kernel:
     return Kernel(derive(stage))
 
 
-def _compiled(expressions: tuple[sp.Expr, ...]) -> tuple[tuple[str, ...], Callable[..., Any]]:
+def compiled(expressions: tuple[sp.Expr, ...]) -> Compiled:
+    """Compile expressions into one function with common parts evaluated once.
+
+    Parameters
+    ----------
+    expressions : tuple of sympy.Expr
+        In symbols of a law.
+
+    Returns
+    -------
+    tuple
+        Names of the arguments in order, and the function; it returns one value an expression.
+    """
     symbols = sorted(set().union(*(e.free_symbols for e in expressions)), key=lambda s: s.name)
     function = sp.lambdify(symbols, expressions, modules="numpy", cse=True)
     return tuple(s.name for s in symbols), function
