@@ -16,7 +16,8 @@ from matplotlib.path import Path
 from matplotlib.text import Text
 
 from hystkit.figures.lettering import width_px
-from hystkit.figures.theme import MARKS, PX_PER_INCH, LetterSize, Mark, letters
+from hystkit.figures.stamp import Stamp
+from hystkit.figures.theme import MARKS, PX_PER_INCH, Dashes, LetterSize, Mark, letters
 
 Point = tuple[float, float]
 Align = Literal["left", "center", "right"]
@@ -85,7 +86,7 @@ def segments(
     width: float,
     *,
     zorder: float = SCALE,
-    dashes: tuple[float, tuple[float, ...]] = (0, ()),
+    dashes: Dashes = "-",
     gid: str | None = None,
 ) -> LineCollection:
     """Draw straight lines in one go."""
@@ -149,7 +150,7 @@ def tip(page: Axes, colour: str, size: float = TIP_PX, zorder: float = MARK) -> 
 
 def point_tip(artist: Line2D, at: Point, direction: str) -> None:
     """Set an arrow tip with its point on a place, pointing right, left, up or down the page."""
-    artist.set_marker(TIPS[direction])  # type: ignore[arg-type]
+    artist.set_marker(TIPS[direction])
     artist.set_data([at[0]], [at[1]])
 
 
@@ -248,11 +249,13 @@ class Tag:
     ) -> None:
         self._inks = inks
         self._texts = [
-            [moving(lettered(page, "", (0, 0), ink, zorder=TAG)) for ink in row] for row in inks
+            [Stamp(ink.colour, ink.size, ink.bold, ink.math, TAG) for ink in row] for row in inks
         ]
         for row in self._texts:
             for text in row:
+                page.add_artist(moving(text))
                 text.set_gid(name)
+                text.set_clip_on(False)
         self._widths: list[list[float]] = []
 
     def write(self, *rows: Sequence[str]) -> float:

@@ -7,9 +7,11 @@ from collections.abc import Callable, Sequence
 from dataclasses import dataclass
 from typing import Any
 
+import numpy as np
 from matplotlib.artist import Artist
 from matplotlib.axes import Axes
 from matplotlib.patches import Rectangle
+from numpy.typing import NDArray
 
 from hystkit.figures.drafting import (
     GUIDE,
@@ -24,12 +26,11 @@ from hystkit.figures.graduation import (
     Scale,
     number,
     outward,
-    prefix_for,
     roundness,
     step_for,
     ticks,
 )
-from hystkit.figures.lettering import width_px, wrapped, written
+from hystkit.figures.lettering import prefix_for, width_px, wrapped, written
 from hystkit.figures.placement import Want, spread_out, thinned
 from hystkit.figures.theme import MARKS, Theme, symbol
 from hystkit.numeric.views import Levels
@@ -37,6 +38,10 @@ from hystkit.numeric.views import Levels
 #: Space between the plotting area and its axes, so that no trace runs on an axis [px].
 OFFSET = 7.0
 _NUMBER_GAP = 8.0
+# Room for the title of the upright axis [px].
+_TITLE = 26.0
+# Wanted and least distance of its numbers [px]; a low area takes them closer to have three.
+_PITCH, _LEAST_PITCH = 28.0, 16.0
 OUTPUTS = (("output_high", "V_OH"), ("output_low", "V_OL"))
 
 
@@ -120,17 +125,53 @@ class Frame:
     def _draw_up(self, page: Axes, theme: Theme) -> None:
         x, scale = self.left - OFFSET, self.up
         segments(page, [((x, self.top), (x, self.bottom))], theme.line, 1.4)
-        factor, unit = prefix_for(scale.low, scale.high, self.up_unit)
-        step = step_for((scale.high - scale.low) / factor, (scale.start - scale.end) / 28)
-        values = ticks(scale.low / factor, scale.high / factor, step)
-        places = [scale.px(value * factor) for value in values]
-        segments(page, [((x - 5, y), (x, y)) for y in places], theme.line, 1.2)
-        for value, y in zip(values, places, strict=True):
+        factor, unit, texts = _up_numbers(
+            scale.low, scale.high, scale.start - scale.end, self.up_unit
+        )
+        places = {value: scale.px(value * factor) for value in texts}
+        segments(page, [((x - 5, y), (x, y)) for y in places.values()], theme.line, 1.2)
+        for value, text in texts.items():
             ink = Ink(theme.text, "small")
-            lettered(page, number(value, step), (x - 8, y + 4), ink, "right")
+            lettered(page, text, (x - 8, places[value] + 4), ink, "right")
         title = f"{self.up_name} / {unit}"
         made = lettered(page, title, (17, (self.top + self.bottom) / 2), Ink(theme.muted, "small"))
         made.set(rotation=90, rotation_mode="anchor", ha="center")
+
+
+def left_for(up: tuple[float, float], height: float, unit: str = "V") -> float:
+    """Return where an area of that height starts, so that the numbers of its axis have room [px].
+
+    Parameters
+    ----------
+    up : tuple of float
+        Range of the axis that runs up the page.
+    height : float
+        Its length [px].
+    unit : str, default "V"
+        Its unit without prefix.
+    """
+    texts = _up_numbers(*up, height, unit)[2].values()
+    widest = max((width_px(text, "small") for text in texts), default=0.0)
+    return max(_TITLE + widest + 8 + OFFSET, 62.0)
+
+
+def _up_numbers(
+    low: float, high: float, height: float, unit: str
+) -> tuple[float, str, dict[float, str]]:
+    """Return the factor and unit of an upright axis, and the number at each of its ticks."""
+    factor, prefixed = prefix_for(low, high, unit)
+    for pitch in (_PITCH, _LEAST_PITCH):
+        step = step_for((high - low) / factor, height / pitch)
+        values = ticks(low / factor, high / factor, step)
+        if len(values) > 2:
+            break
+    return factor, prefixed, {value: number(value, step) for value in values}
+
+
+def ends_of(values: NDArray[np.float64]) -> list[float]:
+    """Return the least and the greatest finite value, or nothing."""
+    kept = values[np.isfinite(values)]
+    return [float(kept.min()), float(kept.max())] if kept.size else []
 
 
 def padded(values: Sequence[float], share: float = 0.06) -> tuple[float, float]:

@@ -85,12 +85,3 @@ def outward(low: float, high: float, grain: float) -> tuple[float, float]:
     first = math.floor(low / grain + 1e-9) * grain
     last = math.ceil(high / grain - 1e-9) * grain
     return float(f"{first:.12g}"), float(f"{last:.12g}")
-
-
-def prefix_for(low: float, high: float, unit: str) -> tuple[float, str]:
-    """Return the factor and the unit with prefix in which an axis is best numbered."""
-    largest = max(abs(low), abs(high))
-    for factor, prefix in ((1e9, "G"), (1e6, "M"), (1e3, "k"), (1.0, ""), (1e-3, "m"), (1e-6, "µ")):
-        if largest >= factor * (1 - 1e-9):
-            return factor, prefix + unit
-    return 1e-9, "n" + unit

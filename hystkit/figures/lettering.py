@@ -15,6 +15,8 @@ from hystkit.figures.theme import PX_PER_INCH, LetterSize, letters
 
 MINUS = "−"
 _UNIT_LETTERS = 10
+# Less than that is what rounding leaves of zero.
+_NOTHING = 1e-13
 _RULE: Any = RendererAgg(1, 1, PX_PER_INCH)  # type: ignore[no-untyped-call]
 
 
@@ -50,13 +52,28 @@ def wrapped(text: str, room: float, lines: int, size: LetterSize = "text") -> tu
 
 def written(value: float, unit: str = "V", digits: int = 4) -> str:
     """Return a value with its engineering prefix and a true minus sign."""
-    text = show(value, unit, digits)
+    text = show(0.0 if abs(value) < _NOTHING else value, unit, digits)
     return MINUS + text[1:] if text.startswith("-") else text
 
 
+def prefix_for(low: float, high: float, unit: str) -> tuple[float, str]:
+    """Return the factor and the unit with prefix in which a range is best written."""
+    largest = max(abs(low), abs(high))
+    for factor, prefix in ((1e9, "G"), (1e6, "M"), (1e3, "k"), (1.0, ""), (1e-3, "m"), (1e-6, "µ")):
+        if largest >= factor * (1 - 1e-9):
+            return factor, prefix + unit
+    return (1.0, unit) if largest < _NOTHING else (1e-9, "n" + unit)
+
+
 def written_span(low: float, high: float, unit: str = "V") -> str:
-    """Return both ends of a range."""
-    return f"{written(low, unit)} to {written(high, unit)}"
+    """Return both ends of a range, in the prefix of the larger one."""
+    factor, prefixed = prefix_for(low, high, unit)
+    return f"{_short(low / factor)} to {_short(high / factor)} {prefixed}"
+
+
+def _short(value: float) -> str:
+    """Return a number with four digits; what is too small beside its unit is zero."""
+    return f"{value if abs(value) >= 5e-4 else 0.0:.4g}".replace("-", MINUS)
 
 
 def trip_digits(value: float, width: float) -> int:
@@ -113,5 +130,4 @@ def in_measurand(signal: Signal, volts: float, others: tuple[float, float]) -> s
 def span_in_measurand(signal: Signal) -> str:
     """Return the span of the signal in its own unit."""
     low, high = signal.span
-    ends = " to ".join(f"{end:.4g}".replace("-", MINUS) for end in (low, high))
-    return f"{ends} {short_unit(signal)}".rstrip()
+    return f"{_short(low)} to {_short(high)} {short_unit(signal)}".rstrip()

@@ -20,7 +20,7 @@ from hystkit.figures.drafting import (
     stretch,
     tip,
 )
-from hystkit.figures.frame import Frame, OutputTags, draw_message, padded
+from hystkit.figures.frame import Frame, OutputTags, draw_message, ends_of, left_for, padded
 from hystkit.figures.graduation import Scale, outward, step_for
 from hystkit.figures.lettering import written, written_span
 from hystkit.figures.picture import Picture
@@ -29,8 +29,10 @@ from hystkit.figures.theme import MARKS, Theme
 from hystkit.figures.trip_tags import TripTags, trips_in_words
 from hystkit.numeric.views import Loop
 
-_LEFT, _RIGHT, _BELOW = 62.0, 118.0, 34.0
-_PATHS = (("rising", "upper", 0.42), ("falling", "lower", 0.58))
+_RIGHT, _BELOW = 118.0, 34.0
+#: Path, the trip it ends at, and where on its jump the arrow stands. The jumps run in opposite
+#: directions, so that with a share below one half the arrows of a narrow band are kept apart.
+PATHS = (("rising", "upper", 0.36), ("falling", "lower", 0.36))
 _LEAST_JUMP = 26.0
 _LEAST_BAND = 44.0
 
@@ -52,10 +54,9 @@ class LoopPicture(Picture[Loop]):
         levels = data.levels
         self._drawn = switches(levels)
         across = _steady(data.axis)
-        outputs = [data.rising[1], data.falling[1]]
         up = padded([
             *finite(levels.v_ee, levels.v_cc, levels.output_low, levels.output_high),
-            *(float(f(path)) for path in outputs if path.size for f in (np.nanmin, np.nanmax)),
+            *(end for _, output in (data.rising, data.falling) for end in ends_of(output)),
         ])  # fmt: skip
         self._message = "" if self._drawn else levels.message or NO_TRIPS
         self._frame = self._framed(across, up, two_rows=levels.signal is not None)
@@ -66,9 +67,10 @@ class LoopPicture(Picture[Loop]):
     ) -> Frame:
         self._height = min(max(0.56 * self._width_px, 270), 440)
         top = 62.0 if two_rows or not self._drawn else 47.0
+        bottom = self._height - _BELOW
         return Frame(
-            Scale(*across, _LEFT, self._width_px - _RIGHT),
-            Scale(*up, self._height - _BELOW, top),
+            Scale(*across, left_for(up, bottom - top), self._width_px - _RIGHT),
+            Scale(*up, bottom, top),
             "signal",
             "output",
         )
@@ -90,7 +92,7 @@ class LoopPicture(Picture[Loop]):
 
     def _make_paths(self, page: Axes, theme: Theme) -> None:
         self._paths, self._tips = {}, {}
-        for way, trip, _ in _PATHS:
+        for way, trip, _ in PATHS:
             colour = getattr(theme, trip)
             self._paths[way] = self._moving(
                 line(page, colour, 2.4, TRACE, linestyle=MARKS[trip].dashes, gid=way)
@@ -102,7 +104,7 @@ class LoopPicture(Picture[Loop]):
     def _move(self, data: Loop) -> None:
         frame = self._frame
         self._outputs.move(data.levels)
-        for way, _, share in _PATHS:
+        for way, _, share in PATHS:
             signal, output = getattr(data, way)
             x, y = frame.across.px(signal), frame.up.px(output)
             self._paths[way].set_data(x, y)

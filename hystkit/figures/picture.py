@@ -9,23 +9,22 @@ from contextlib import contextmanager
 from pathlib import Path
 from typing import Any, ClassVar, Generic, TypeVar
 
+import numpy as np
 from matplotlib.artist import Artist
 from matplotlib.axes import Axes
 from matplotlib.backends.backend_agg import FigureCanvasAgg
 from matplotlib.figure import Figure
-from PIL import Image
 
 from hystkit.base.errors import Fault, InputError, OutputExistsError
-from hystkit.figures.theme import PX_PER_INCH, Theme, drawing, theme_of
+from hystkit.figures.png import encode
+from hystkit.figures.theme import PX_PER_INCH, Theme, drawing, lettering, theme_of
 
 T = TypeVar("T")
 A = TypeVar("A", bound=Artist)
 
-# Fastest level: the picture goes through a socket once and is thrown away.
-_PNG_LEVEL = 1
 # matplotlib would write its version and the date into a file, and each run would differ.
 _NO_METADATA: dict[str, dict[str, None]] = {
-    ".png": {"Software": None},
+    ".png": {},
     ".svg": {"Date": None, "Creator": None},
     ".pdf": {"CreationDate": None, "Creator": None, "Producer": None},
 }
@@ -136,14 +135,10 @@ class Picture(ABC, Generic[T]):
         data
             What the picture shows; never changed.
         """
-        key = (self._layout_key(data), self._theme, self._width_px)
-        with drawing():
+        with lettering():
+            key = (self._layout_key(data), self._theme, self._width_px)
             if key != self._key:
-                self._key = self._background = None
-                self._movers.clear()
-                self.figure.clear()
-                self.figure.set_facecolor(self._theme.background)
-                self._lay_out(data)
+                self._start_afresh(data)
                 self._key = key
             self._move(data)
         self._data = data
@@ -178,8 +173,7 @@ class Picture(ABC, Generic[T]):
         -------
         bytes
         """
-        with drawing():
-            self._blit(scale)
+        self._blit(scale)
         return self._encode(scale)
 
     def full_png(self, scale: float = 2) -> bytes:
@@ -248,6 +242,14 @@ class Picture(ABC, Generic[T]):
 
     # -- how it is done ---------------------------------------------------------------------
 
+    def _start_afresh(self, data: T) -> None:
+        self._key = self._background = None
+        self._movers.clear()
+        with drawing():
+            self.figure.clear()
+            self.figure.set_facecolor(self._theme.background)
+            self._lay_out(data)
+
     def _checked_width(self, width_px: int) -> int:
         if width_px >= self.min_width_px:
             return int(width_px)
@@ -265,24 +267,19 @@ class Picture(ABC, Generic[T]):
             self.figure.set_dpi(dpi)
             self._background = None
         if self._background is None:
-            self._canvas.draw()
+            with drawing():
+                self._canvas.draw()
             self._background = self._canvas.copy_from_bbox(self.figure.bbox)
             self.full_redraws += 1
         else:
             self._canvas.restore_region(self._background)
         renderer = self._canvas.get_renderer()
-        for artist in sorted(self._movers, key=Artist.get_zorder):
-            artist.draw(renderer)
+        with lettering():
+            for artist in sorted(self._movers, key=Artist.get_zorder):
+                artist.draw(renderer)
 
     def _encode(self, scale: float) -> bytes:
-        width, height = self._canvas.get_width_height(physical=True)
-        pixels = Image.frombuffer(
-            "RGBA", (width, height), self._canvas.buffer_rgba(), "raw", "RGBA", 0, 1
-        )
-        dpi = PX_PER_INCH * scale
-        file = io.BytesIO()
-        pixels.save(file, "png", compress_level=_PNG_LEVEL, dpi=(dpi, dpi))
-        return file.getvalue()
+        return encode(np.asarray(self._canvas.buffer_rgba()), PX_PER_INCH * scale)
 
     def _written(self, ending: str) -> bytes:
         file = io.BytesIO()

@@ -38,37 +38,36 @@ _LEVELS = (("output_low", "V_OL"), ("output_high", "V_OH"), ("reference", "V_REF
 
 @dataclass(frozen=True)
 class Margin:
-    """Distance from a trip to the end of the common-mode range that is nearest to it.
+    """Distance from an input pin's voltage at a trip to the nearest end of its allowed range.
 
     Attributes
     ----------
     value : float
-        [V]; negative where the trip lies outside.
-    trip, limit : float
-        Both ends [V]; the trip is the end of its interval where there is one.
+        [V]; negative where the pin lies outside.
+    pin, limit : float
+        Both ends [V].
     small : bool
         Whether it is less than `SMALL_MARGIN` of the supply.
     """
 
     value: float
-    trip: float
+    pin: float
     limit: float
     small: bool
 
 
 def nearest_margin(levels: Levels) -> Margin | None:
     """Return the smallest margin to the common-mode range, None where there is none to draw."""
-    if levels.common_mode is None or not switches(levels):
+    if levels.common_mode is None or levels.pins is None or not switches(levels):
         return None
     low, high = levels.common_mode
-    least = levels.lower_interval[0] if levels.lower_interval else levels.lower
-    most = levels.upper_interval[1] if levels.upper_interval else levels.upper
+    least, most = levels.pins
     pairs = [(least - low, least, low), (high - most, most, high)]
     drawable = [pair for pair in pairs if len(finite(*pair)) == 3]
     if not drawable:
         return None
-    value, trip, limit = min(drawable)
-    return Margin(value, trip, limit, value < SMALL_MARGIN * (levels.v_cc - levels.v_ee))
+    value, pin, limit = min(drawable)
+    return Margin(value, pin, limit, value < SMALL_MARGIN * (levels.v_cc - levels.v_ee))
 
 
 class RulerPicture(Picture[Levels]):
@@ -114,9 +113,7 @@ class RulerPicture(Picture[Levels]):
         self._width_tag = Tag(page, [[Ink(theme.band, "small", bold=True)]], moving, "width")
         self._margin = Dimension(page, theme.text, moving)
         self._margin_tag = Tag(page, [[Ink(theme.text, "small")]], moving, "margin")
-        self._outside = moving(
-            marker(page, Mark((0, ()), "X"), theme.warning, theme.warning, 8, MARK)
-        )
+        self._outside = moving(marker(page, Mark("-", "X"), theme.warning, theme.warning, 8, MARK))
         self._make_level_movers(page)
 
     def _make_level_movers(self, page: Axes) -> None:
@@ -214,11 +211,11 @@ class RulerPicture(Picture[Levels]):
             return
         rows, scale = self._rows, self._plan.scale
         colour = self._theme.warning if margin.small else self._theme.text
-        ends = sorted((scale.inside(margin.trip), scale.inside(margin.limit)))
+        ends = sorted((scale.inside(margin.pin), scale.inside(margin.limit)))
         self._margin.colour(colour)
         self._margin.show(ends[0], ends[1], rows.margin)
         self._outside.set_visible(margin.value < 0)
-        self._outside.set_data([scale.inside(margin.trip)], [rows.common_mode])
+        self._outside.set_data([scale.inside(margin.pin)], [rows.common_mode])
         sign = "! " if margin.small else ""
         self._margin_tag.colour(colour)
         self._margin_tag.write([sign + written(margin.value, digits=3)])

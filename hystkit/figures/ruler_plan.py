@@ -12,7 +12,6 @@ from hystkit.figures.graduation import (
     Scale,
     number,
     outward,
-    prefix_for,
     roundness,
     step_for,
     ticks,
@@ -20,6 +19,7 @@ from hystkit.figures.graduation import (
 from hystkit.figures.lettering import (
     MINUS,
     one_line,
+    prefix_for,
     short_unit,
     span_in_measurand,
     width_px,

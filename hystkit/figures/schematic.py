@@ -3,12 +3,15 @@
 from __future__ import annotations
 
 from collections.abc import Hashable, Iterator
-from typing import TYPE_CHECKING
+from functools import lru_cache
+from typing import TYPE_CHECKING, Any
 
+from matplotlib.backends.backend_agg import RendererAgg
 from matplotlib.font_manager import FontProperties
 
 from hystkit.base.quantity import code, show
 from hystkit.circuit.elements import FIXED_NODES, Resistor
+from hystkit.figures.lettering import written
 from hystkit.figures.picture import Picture
 from hystkit.figures.schematic_custom import routed_sheet
 from hystkit.figures.schematic_forms import form_sheet
@@ -24,11 +27,8 @@ if TYPE_CHECKING:
 
     from hystkit.circuit.design import Design
 
-_MARGIN_PX = 8.0
 #: Room that is kept for values, so that moving a slider does not move the drawing.
-_ROOM = {"R": "88k88", "V": "-88.88 V"}
-#: A drawing narrower than this many units is not blown up to the full width.
-_LEAST_UNITS = 9.0
+_PART_ROOM, _LEVEL_ROOM = "88k88", "-88.88 V"
 #: Distances of the rows of one's own circuit, in the order in which they are tried.
 _ROW_PITCHES = (1.5, 1.8, 2.1)
 _STROKE_PX = 1.5
@@ -55,16 +55,15 @@ class SchematicPicture(Picture["Design"]):
 
     def _layout_key(self, design: Design) -> Hashable:
         texts = value_texts(design)
-        wide = tuple(name for name, text in texts.items() if len(text) > len(_ROOM[name[0]]))
-        lengths = tuple(len(texts[name]) for name in wide)
-        quantity = design.signal.name if design.signal else ""
-        return (design.elements, design.stage.supply, design.stage.output, quantity, wide, lengths)
+        rooms = tuple(len(_room(name, text, design)) for name, text in texts.items())
+        stage = design.stage
+        return (design.elements, stage.supply, stage.output, _quantity(design), rooms)
 
     def _lay_out(self, design: Design) -> None:
         lettering = Lettering(
             name_px=_between(13.0, self.width_px / 36, 15.0),
             value_px=_between(11.5, self.width_px / 40, 13.5),
-            width_of=self._width_of,
+            width_of=_width_px,
         )
         fit = self._fit(design, lettering)
         self._resize(fit.height_px)
@@ -82,7 +81,7 @@ class SchematicPicture(Picture["Design"]):
         """Choose the drawing: the first one with room for its texts."""
         for sheet in sheets_of(design):
             spots = self._spots(sheet, lettering, design)
-            fit = fitted(sheet, spots, self.width_px, margin=_MARGIN_PX, least_units=_LEAST_UNITS)
+            fit = fitted(sheet, spots, lettering, self.width_px)
             if not is_crowded(fit):
                 break
         return fit
@@ -119,26 +118,19 @@ class SchematicPicture(Picture["Design"]):
     def _spots(self, sheet: Sheet, lettering: Lettering, design: Design) -> list[Spot]:
         """Measure the texts of a sheet."""
         texts = value_texts(design)
-        quantity = design.signal.name if design.signal else ""
+        quantity = _quantity(design)
         spots = []
         for label in sheet.labels:
             if label.kind == "name":
                 spots.append(lettering.name(label, symbol(label.key)))
             elif label.kind == "value":
-                room = max(_ROOM[label.key[0]], texts[label.key], key=len)
-                spots.append(lettering.value(label, texts[label.key], room))
+                text = texts[label.key]
+                spots.append(lettering.value(label, text, _room(label.key, text, design)))
             elif label.kind == "word":
                 spots.append(lettering.value(label, label.key, label.key))
             elif quantity:
                 spots.append(lettering.value(label, quantity, quantity))
         return spots
-
-    def _width_of(self, text: str, size_px: float, is_math: bool) -> float:
-        """Measure a text in px of the page."""
-        renderer = self._canvas.get_renderer()
-        font = FontProperties(family=FONT, size=size_px * 72 / PX_PER_INCH)
-        width, _, _ = renderer.get_text_width_height_descent(text, font, ismath=is_math)
-        return float(width) * PX_PER_INCH / self.figure.dpi
 
 
 def schematic(
@@ -208,8 +200,8 @@ def value_texts(design: Design) -> dict[str, str]:
         Symbol to text: letter code of IEC 60062 for parts, volts for levels.
     """
     texts = {name: code(part.value) for name, part in design.parts.items()}
-    volts = {name: value for name, value in design.values.items() if name.startswith("V_")}
-    return texts | {name: show(value, "V") for name, value in volts.items()}
+    levels = {name: written(v) for name, v in design.values.items() if name.startswith("V_")}
+    return levels | texts
 
 
 _WORDS = {
@@ -233,6 +225,8 @@ def _sentences(design: Design) -> Iterator[str]:
         return f"{name} ({texts[name]})" if name in texts else "ground"
 
     yield f"Schematic, {design.stage.title}. "
+    if quantity := _quantity(design):
+        yield f"The signal is {quantity}. "
     for element in design.elements:
         if isinstance(element, Resistor):
             ohms = show(design.parts[element.name].value, "Ω")
@@ -241,6 +235,27 @@ def _sentences(design: Design) -> Iterator[str]:
             yield f"Wire from {words(element.node_a)} to {words(element.node_b)}. "
     yield f"Supply {texts['V_CC']}"
     yield f" and {texts['V_EE']}." if "V_EE" in texts else "."
+
+
+# At the scale of the page, whatever the scale of the picture: both must place texts alike.
+_RULE: Any = RendererAgg(1, 1, PX_PER_INCH)  # type: ignore[no-untyped-call]
+
+
+@lru_cache(maxsize=4096)
+def _width_px(text: str, size_px: float, is_math: bool) -> float:
+    """Measure a text [px]."""
+    font = FontProperties(family=FONT, size=size_px * 72 / PX_PER_INCH)
+    return float(_RULE.get_text_width_height_descent(text, font, is_math)[0])
+
+
+def _quantity(design: Design) -> str:
+    """Return what the signal measures, on one line."""
+    return " ".join(design.signal.name.split()) if design.signal else ""
+
+
+def _room(name: str, text: str, design: Design) -> str:
+    """Return the text whose width is kept for a value."""
+    return max(_PART_ROOM if name in design.parts else _LEVEL_ROOM, text, key=len)
 
 
 def _between(low: float, value: float, high: float) -> float:

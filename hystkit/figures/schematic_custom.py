@@ -22,6 +22,7 @@ _TAP = -0.5
 _FIRST_ROW = -1.9
 _LEAD = 0.35
 _OUT = TRIANGLE_LENGTH + 0.6
+_PAST = 0.25
 #: Least width of the gap before a column.
 _GAP = 0.9
 #: Room for the symbol and the text at the outer end of a stub.
@@ -58,11 +59,14 @@ def routed_sheet(
     minus = net.merged["minus"]
     found = list(chains(net))
     at_pin = _at_minus_pin(found, minus)
-    found = [chain for chain in found if at_pin is None or chain.names != at_pin.names]
-    inner = {net for chain in found for net in chain.ends if net not in FIXED_NODES}
-    plan = planned(found, sorted(inner - {"plus", OUTPUT_NODE}))
+    if at_pin:
+        found = [chain for chain in found if at_pin.names[0] not in chain.names]
+    loose = [chain for chain in found if _is_loose(chain)]
+    tied = [chain for chain in found if not _is_loose(chain)]
+    inner = {net for chain in tied for net in chain.ends if net not in FIXED_NODES}
+    plan = planned(tied, sorted(inner - {"plus", OUTPUT_NODE}))
     pen = Pen(split=split, open_collector=open_collector)
-    return _Router(pen, plan, at_pin, row_pitch).sheet(minus)
+    return _Router(pen, plan, at_pin, row_pitch).sheet(minus, loose)
 
 
 class _Router:
@@ -79,12 +83,17 @@ class _Router:
         if at_pin and self.lifted:
             _make_room(self.x, self.lifted, _length(at_pin) + 0.2)
 
-    def sheet(self, minus: str) -> Sheet:
+    def sheet(self, minus: str, loose: Sequence[Chain]) -> Sheet:
         """Draw it."""
         self._minus_pin(minus)
         self._verticals()
         for chain, row in self.plan.rows.items():
             self._rung(chain, self._y(row))
+        below = max(self.plan.rows.values()) + 1
+        for number, chain in enumerate(loose):
+            at = (_TAP, self._y(below + number))
+            self.pen.outside(chain.start, at, "left")
+            self._stub(chain, at, 1)
         return self.pen.sheet()
 
     def _y(self, row: int) -> float:
@@ -126,19 +135,17 @@ class _Router:
 
     def _rung(self, chain: Chain, y: float) -> None:
         """Draw a chain on its row."""
-        if _is_loose(chain):
-            at = (min(self.x.values()), y)
-            self.pen.outside(chain.start, at, "left")
-            self._stub(chain, at, 1)
-        elif _is_stub(chain):
+        if _is_stub(chain):
             net = next(n for n in chain.ends if n not in FIXED_NODES)
             side = 1 if net == OUTPUT_NODE else -1
             self._stub(chain.starting_at(net), (self.x[net], y), side)
         else:
             low, high = reach(chain, self.plan.columns)
             first, before, last = (self.plan.columns[i] for i in (low, high - 1, high))
-            near = (self.x[before], y)
+            near = (self.x[first], y)
             if before != first:
+                # Past the column that it crosses: a joint on it would connect the two.
+                near = (self.x[before] + _PAST, y)
                 self.pen.wire((self.x[first], y), near)
             self._bodies(chain.starting_at(first), near, (self.x[last], y))
 
@@ -177,8 +184,8 @@ def _columns(plan: Plan) -> dict[str, float]:
     for chain in plan.rows:
         net = plan.columns[reach(chain, plan.columns)[1]]
         if not _is_stub(chain):
-            needs[net] = max(needs[net], _length(chain) + _LEAD)
-        elif net != OUTPUT_NODE and not _is_loose(chain):
+            needs[net] = max(needs[net], _length(chain) + _PAST)
+        elif net != OUTPUT_NODE:
             outer = next(n for n in chain.ends if n in FIXED_NODES)
             needs[net] = max(needs[net], _length(chain) + _ROOM.get(outer, _WIDE_ROOM))
     x = {OUTPUT_NODE: _OUT, "plus": min(_TAP, _OUT - needs[OUTPUT_NODE])}

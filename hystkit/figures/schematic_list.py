@@ -11,8 +11,8 @@ from hystkit.figures.schematic_sheet import BODY_LENGTH, TRIANGLE_LENGTH, Body, 
 
 _FIRST_ROW = -2.9
 _ROW = 1.15
-_WIDTH = 4.3
-_LEAD = 0.25
+_WIDTH = 4.7
+_LEAD = 0.45
 _PIN_LEAD = 0.5
 
 

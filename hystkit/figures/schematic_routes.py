@@ -103,13 +103,9 @@ def chains(net: Netlist) -> tuple[Chain, ...]:
 
 
 def reach(chain: Chain, columns: Sequence[str]) -> tuple[int, int]:
-    """Give the first and the last column that a chain occupies.
-
-    A stub to the left occupies the gap before its column, which counts as a half; so positions
-    are those of `columns`, and a stub has both ends on its own column.
-    """
+    """Return the first and the last column that a chain touches; for a stub they are the same."""
     at = [columns.index(net) for net in chain.ends if net in columns]
-    return (min(at), max(at)) if at else (0, 0)
+    return (min(at), max(at))
 
 
 def planned(found: Sequence[Chain], left: Sequence[str]) -> Plan:
@@ -118,7 +114,7 @@ def planned(found: Sequence[Chain], left: Sequence[str]) -> Plan:
     Parameters
     ----------
     found : sequence of Chain
-        Everything that takes a row.
+        Everything that takes a row; each touches a free net.
     left : sequence of str
         Free nets left of the comparator, without plus; plus is always the last of them.
 
@@ -160,8 +156,6 @@ def _stacked(order: Sequence[Chain], columns: tuple[str, ...]) -> Plan:
 def _occupied(chain: Chain, columns: tuple[str, ...]) -> tuple[float, float]:
     """Give the stretch of a row that a chain takes, in columns; a stub takes half a gap."""
     low, high = reach(chain, columns)
-    if all(net in FIXED_NODES for net in chain.ends):
-        return (-1.0, len(columns))
     if not any(net in FIXED_NODES for net in chain.ends):
         return (low, high)
     return (low, low + 0.5) if columns[low] == OUTPUT_NODE else (low - 0.5, low)

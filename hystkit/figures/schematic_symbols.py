@@ -25,6 +25,14 @@ if TYPE_CHECKING:
     from matplotlib.axes import Axes
 
 DOT = 0.065
+_STYLE = {
+    "unit": 1.0,
+    "inches_per_unit": 1.0,
+    "lblofst": 0.1,
+    "margin": 0.0,
+    "fill": None,
+    "ls": "-",
+}
 _SIGN = 0.12
 _SIGN_AT = 0.32
 _DIAMOND = 0.145
@@ -50,10 +58,9 @@ def draw_sheet(sheet: Sheet, axes: Axes, *, colour: str, line_width: float) -> N
     from schemdraw import elements
 
     drawing = schemdraw.Drawing(canvas=axes, show=False)
-    # Nobody's own schemdraw style may leak in.
-    for setting in ("bgcolor", "dwgbbox", "elmbbox", "mathfont"):
-        drawing.dwgparams.pop(setting, None)
-    drawing.config(unit=1.0, color=colour, lw=line_width, ls="-")
+    # All of it, so that nobody's own schemdraw style leaks in.
+    drawing.dwgparams.clear()
+    drawing.dwgparams.update(_STYLE, color=colour, lw=line_width)
     for body in sheet.bodies:
         drawing.add(_resistor(elements, body))
     strokes = [line.points for line in sheet.lines]

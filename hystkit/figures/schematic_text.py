@@ -13,6 +13,10 @@ _DEPTH = 0.30
 _LINE = 1.3
 #: A name that would be cut shorter than this is left out; the text beside the picture has it.
 _LEAST_LETTERS = 4
+#: Empty edge on every side [px].
+_MARGIN_PX = 8.0
+#: A drawing narrower than this many units is not blown up to the full width.
+_LEAST_UNITS = 9.0
 #: Largest drawing [px per unit]; on wider paper it stands in the middle.
 _MOST_SCALE = 75.0
 #: Between an anchor and its text [px].
@@ -123,9 +127,7 @@ class Fit:
         return (x + dx / self.scale, y + dy / self.scale)
 
 
-def fitted(
-    sheet: Sheet, spots: Sequence[Spot], width_px: float, *, margin: float, least_units: float
-) -> Fit:
+def fitted(sheet: Sheet, spots: Sequence[Spot], lettering: Lettering, width_px: float) -> Fit:
     """Find the scale at which a sheet with its texts is just as wide as the paper.
 
     Parameters
@@ -134,10 +136,10 @@ def fitted(
         What stands where.
     spots : sequence of Spot
         Its texts, measured.
-    width_px, margin : float
-        Width of the paper and empty edge on every side [px].
-    least_units : float
-        The paper shows at least this many drawing units.
+    lettering : Lettering
+        What they were measured with.
+    width_px : float
+        Width of the paper [px].
 
     Returns
     -------
@@ -145,20 +147,22 @@ def fitted(
         Scale and place on the paper.
     """
     firm = [spot for spot in spots if spot.label.kind != "quantity"]
-    low, high = 1.0, min(_MOST_SCALE, width_px / least_units)
+    low, high = 1.0, min(_MOST_SCALE, width_px / _LEAST_UNITS)
     for _ in range(40):
         scale = (low + high) / 2
         left, _, right, _ = _outline(sheet, firm, scale)
-        if (right - left) * scale > width_px - 2 * margin:
+        if (right - left) * scale > width_px - 2 * _MARGIN_PX:
             high = scale
         else:
             low = scale
     scale = low
-    spots = [_quantity(spot, sheet, firm, scale) if spot not in firm else spot for spot in spots]
-    left, bottom, right, top = _outline(sheet, spots, scale)
+    for spot in spots:
+        if spot.label.kind == "quantity":
+            firm += _quantity(spot, sheet, firm, scale, lettering)
+    left, bottom, right, top = _outline(sheet, firm, scale)
     left = (left + right - width_px / scale) / 2
-    height = (top - bottom) * scale + 2 * margin
-    return Fit(sheet, scale, left, top + margin / scale, height, tuple(spots))
+    height = (top - bottom) * scale + 2 * _MARGIN_PX
+    return Fit(sheet, scale, left, top + _MARGIN_PX / scale, height, tuple(firm))
 
 
 def _outline(sheet: Sheet, spots: Sequence[Spot], scale: float) -> Box:
@@ -166,7 +170,9 @@ def _outline(sheet: Sheet, spots: Sequence[Spot], scale: float) -> Box:
     return (min(left), min(bottom), max(right), max(top))
 
 
-def _quantity(spot: Spot, sheet: Sheet, others: Sequence[Spot], scale: float) -> Spot:
+def _quantity(
+    spot: Spot, sheet: Sheet, others: Sequence[Spot], scale: float, lettering: Lettering
+) -> list[Spot]:
     """Start the quantity's name under its symbol, and cut it where something stands."""
     beside = next(s for s in others if s.label.key == "V_IN")
     shift = beside.box_px[0] - spot.offset[0]
@@ -177,11 +183,12 @@ def _quantity(spot: Spot, sheet: Sheet, others: Sequence[Spot], scale: float) ->
     walls = [b[0] for b in taken if b[2] > left and b[1] < top and b[3] > bottom]
     room = (min([*walls, sheet.box[2]]) - left) * scale - 2 * _GAP_PX
     if spot.width_px <= room:
-        return spot
-    letters = int(room * len(spot.text) / spot.width_px) - 1
-    if letters < _LEAST_LETTERS:
-        return replace(spot, text="", width_px=0.0)
-    return replace(spot, text=spot.text[:letters].rstrip() + "…", width_px=room)
+        return [spot]
+    text = spot.text
+    while text and lettering.width_of(f"{text}…", spot.size_px, False) > room:
+        text = text[:-1].rstrip()
+    short = replace(spot, text=f"{text}…", width_px=room)
+    return [short] if len(text) >= _LEAST_LETTERS else []
 
 
 def obstacles(sheet: Sheet) -> tuple[Box, ...]:
@@ -200,7 +207,7 @@ def obstacles(sheet: Sheet) -> tuple[Box, ...]:
 
 def is_crowded(fit: Fit) -> bool:
     """Tell whether a text touches another one or anything drawn."""
-    boxes = [spot.box(fit.scale) for spot in fit.spots if spot.text]
+    boxes = [spot.box(fit.scale) for spot in fit.spots]
     return any(
         overlap(box, other)
         for number, box in enumerate(boxes)

@@ -2,11 +2,11 @@
 
 from __future__ import annotations
 
+import math
 from collections.abc import Hashable
 
 import numpy as np
 from matplotlib.axes import Axes
-from numpy.typing import NDArray
 
 from hystkit.figures.drafting import (
     GUIDE,
@@ -20,9 +20,9 @@ from hystkit.figures.drafting import (
     segments,
     stretch,
 )
-from hystkit.figures.frame import Frame, OutputTags, draw_message, padded
+from hystkit.figures.frame import Frame, OutputTags, draw_message, ends_of, left_for, padded
 from hystkit.figures.graduation import Scale
-from hystkit.figures.lettering import written
+from hystkit.figures.lettering import width_px, written
 from hystkit.figures.picture import Picture
 from hystkit.figures.placement import Want, spread_out
 from hystkit.figures.ruler_plan import NO_TRIPS, finite, switches
@@ -30,7 +30,9 @@ from hystkit.figures.theme import MARKS, Theme
 from hystkit.figures.trip_tags import trip_rows, trips_in_words
 from hystkit.numeric.views import Levels, Response
 
-_LEFT, _RIGHT, _BELOW, _BETWEEN = 62.0, 164.0, 34.0, 34.0
+_LEAST_RIGHT, _BELOW, _BETWEEN = 128.0, 34.0, 34.0
+# Labels of the trips begin here, right of the area, and their room grows in such steps [px].
+_LABELS, _STEP = 24.0, 20.0
 _TRIPS = ("upper", "lower")
 
 
@@ -52,13 +54,14 @@ class TimelinePicture(Picture[Response]):
         self._drawn = switches(levels)
         self._message = "" if self._drawn else levels.message or NO_TRIPS
         trips = [levels.lower, levels.upper] if self._drawn else []
-        signal = padded([*_ends(data.signal), *trips])
+        signal = padded([*ends_of(data.signal), *trips])
         output = padded([
             *finite(levels.v_ee, levels.v_cc, levels.output_low, levels.output_high),
-            *_ends(data.output),
+            *ends_of(data.output),
         ])  # fmt: skip
-        time = _ends(data.time)
+        time = ends_of(data.time)
         across = (time[0], time[1]) if len(time) == 2 and time[1] > time[0] else (0.0, 1.0)
+        self._right = _room_for(levels) if self._drawn else _LEAST_RIGHT
         self._frames = self._framed(across, signal, output)
         return self._frames, self._message, levels.signal is None
 
@@ -71,7 +74,8 @@ class TimelinePicture(Picture[Response]):
         top = 16.0 if self._drawn else 52.0
         upper = min(max(0.21 * self._width_px, 140), 230)
         lower = 0.55 * upper
-        ends = (*across, _LEFT, self._width_px - _RIGHT)
+        left = max(left_for(signal, upper), left_for(output, lower))
+        ends = (*across, left, self._width_px - self._right)
         middle = top + upper
         bottom = middle + _BETWEEN + lower
         self._height = bottom + _BELOW
@@ -139,7 +143,7 @@ class TimelinePicture(Picture[Response]):
             self._leads[trip].set_data([frame.right, frame.right + 10], [y, mark])
             self._ends[trip].set_data([frame.right + 14], [mark])
             self._tags[trip].write(*trip_rows(levels, trip))
-            self._tags[trip].put(frame.right + 24, start + 12)
+            self._tags[trip].put(frame.right + _LABELS, start + 12)
 
     def _move_switches(self, data: Response) -> None:
         """Mark the instants at which the output changes, each with the trip that it passes."""
@@ -163,10 +167,14 @@ class TimelinePicture(Picture[Response]):
         )
 
 
-def _ends(values: NDArray[np.float64]) -> list[float]:
-    """Return the least and the greatest finite value, or nothing."""
-    kept = values[np.isfinite(values)]
-    return [float(kept.min()), float(kept.max())] if kept.size else []
+def _room_for(levels: Levels) -> float:
+    """Return the room for the labels of the trips; in steps, so that it seldom changes."""
+    widest = max(
+        width_px(text, bold=number == 0)
+        for trip in _TRIPS
+        for number, (text,) in enumerate(trip_rows(levels, trip))
+    )
+    return max(_LABELS + _STEP * math.ceil((widest + 6) / _STEP), _LEAST_RIGHT)
 
 
 def timeline(
