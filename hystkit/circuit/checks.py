@@ -59,15 +59,27 @@ def infer_sense(elements: Iterable[Element]) -> str | None:
     Returns
     -------
     str or None
-        "inverting" or "non-inverting"; None where the signal reaches both inputs, so that the
-        part values decide.
+        "inverting" or "non-inverting"; None where the signal reaches both inputs on ways of
+        their own, so that the part values decide.
     """
-    net = netlist(elements)
-    reached = net.reach("signal")
-    at_plus, at_minus = (net.merged[pin] in reached for pin in INPUT_NODES)
+    at_plus, at_minus = _signal_at_inputs(netlist(elements))
     if at_plus and at_minus:
         return None
     return "non-inverting" if at_plus else "inverting"
+
+
+def _signal_at_inputs(net: Netlist) -> tuple[bool, bool]:
+    """Whether the signal reaches plus, and minus, by a way around the other one and the output.
+
+    Behind another input the signal can only be weaker than at that input, and an ideal output
+    holds its voltage.
+    """
+    plus, minus = (net.merged[pin] for pin in INPUT_NODES)
+    held = FIXED_NODES.keys() - {"signal"}
+    return (
+        plus in net.reach("signal", minus, OUTPUT_NODE) - held,
+        minus in net.reach("signal", plus, OUTPUT_NODE) - held,
+    )
 
 
 def _element_faults(elements: tuple[Element, ...]) -> Iterator[Fault]:
@@ -146,18 +158,21 @@ def _short_faults(net: Netlist) -> Iterator[Fault]:
 
 def _path_faults(net: Netlist) -> Iterator[Fault]:
     plus, minus = (net.merged[pin] for pin in INPUT_NODES)
-    if plus in FIXED_NODES or plus not in net.reach(OUTPUT_NODE):
+    if plus in FIXED_NODES or plus not in net.reach(OUTPUT_NODE, minus):
+        past = " except through minus" if plus in net.reach(OUTPUT_NODE) else ""
         yield Fault(
             "no positive feedback.",
-            have=f"plus is held by {plus}" if plus in FIXED_NODES else "no path from out to plus",
+            have=f"plus is held by {plus}"
+            if plus in FIXED_NODES
+            else f"no path from out to plus{past}",
             rule="a resistor path leads from out to plus",
             remedy='add a feedback resistor such as Resistor("R_F", "out", "plus")',
         )
-    reached = net.reach("signal")
-    if plus not in reached and minus not in reached:
+    if not any(_signal_at_inputs(net)):
+        past = " except through the output" if net.free & {plus} & net.reach("signal") else ""
         yield Fault(
             "the signal does not reach the inputs.",
-            have="no path from signal to plus or minus",
+            have=f"no path from signal to plus or minus{past}",
             rule="a wire or a resistor path leads from signal to an input",
             remedy='add Wire("signal", "minus") or Resistor("R_I", "signal", "plus")',
         )
@@ -167,8 +182,11 @@ def _floating_faults(net: Netlist) -> Iterator[Fault]:
     for node in sorted(net.free):
         touching = net.at(node)
         inner = node not in (*INPUT_NODES, OUTPUT_NODE)
+        # An input that hangs on the other one alone would follow it and never differ from it.
+        around = () if inner else tuple(net.merged[pin] for pin in INPUT_NODES)
         driven = node == OUTPUT_NODE or any(
-            other in FIXED_NODES or other == OUTPUT_NODE for other in net.reach(node) - {node}
+            other in FIXED_NODES or other == OUTPUT_NODE
+            for other in net.reach(node, *around) - {node}
         )
         if driven and not (inner and len(touching) == 1):
             continue
@@ -187,11 +205,11 @@ def _floating_faults(net: Netlist) -> Iterator[Fault]:
 def _drive_faults(net: Netlist, output: str) -> Iterator[Fault]:
     if output != "open-collector":
         return
-    drivers = [r for r in net.at(OUTPUT_NODE) if any(n in FIXED_NODES for n in r.nodes)]
-    if not drivers:
+    inputs = (net.merged[pin] for pin in INPUT_NODES)
+    if not FIXED_NODES.keys() - {"ground", "ee"} & net.reach(OUTPUT_NODE, *inputs):
         yield Fault(
             "the open-collector output has no pull-up.",
-            have="no resistor from out to a supply",
+            have="no resistor path from out to a supply",
             rule="an open collector only pulls down; a resistor makes the high level",
             remedy='add Resistor("R_PU", "pu", "out")',
         )

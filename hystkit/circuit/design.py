@@ -2,23 +2,27 @@
 
 from __future__ import annotations
 
+import math
 from collections.abc import Mapping
 from dataclasses import dataclass, fields, replace
 from functools import cached_property
-from typing import Any
+from typing import Any, TypeVar
 
-from hystkit.base.errors import DesignError
+from hystkit.base.errors import DesignError, Fault, UnknownNameError
 from hystkit.base.frozen import Named
+from hystkit.base.nearest import unknown_name_fault
+from hystkit.base.quantity import read
 from hystkit.circuit.code import design_code
-from hystkit.circuit.design_checks import design_faults, read_parts
+from hystkit.circuit.design_checks import design_faults, read_parts, read_supply
 from hystkit.circuit.device import Device
 from hystkit.circuit.elements import Element
 from hystkit.circuit.parts import Part, Supply
-from hystkit.circuit.reading import Quantity
+from hystkit.circuit.reading import Quantity, collect
 from hystkit.circuit.signal import Signal
 from hystkit.circuit.stage import Stage
 
 PartLike = Part | Quantity
+Rebuilt = TypeVar("Rebuilt", Supply, Device)
 
 
 @dataclass(frozen=True)
@@ -74,17 +78,19 @@ class Design:
         signal: Signal | None = None,
         name: str = "",
     ) -> None:
-        resistors, voltages, faults = read_parts(parts, levels or {})
-        supply = supply if isinstance(supply, Supply) else Supply(supply)
+        faults: list[Fault] = []
+        resistors = read_parts(parts, "Ω", faults)
+        voltages = read_parts(levels or {}, "V", faults)
+        rails = read_supply(supply, faults)
         device = device or Device()
         stage = stage.with_options(
             *(n for n in stage.optional if n in parts or n in stage.including)
         )
-        faults += design_faults(stage, resistors, voltages, supply, device)
+        faults += design_faults(stage, resistors, voltages, rails, device)
         if faults:
             raise DesignError.of("this design", faults)
         ordered = {name: resistors[name] for name in stage.parts}
-        filled = (stage, Named(ordered), supply, device, Named(voltages), signal, name)
+        filled = (stage, Named(ordered), rails, device, Named(voltages), signal, name)
         for field, value in zip(fields(self), filled, strict=True):
             object.__setattr__(self, field.name, value)
 
@@ -123,7 +129,8 @@ class Design:
         """
         names = tuple(name for name, change in changes.items() if change is None)
         stage = self.stage.with_options(*(n for n in self.stage.including if n not in names))
-        return self._with(stage=stage, parts=_changed(self.parts, changes))
+        known = (*self.stage.parts, *self.stage.optional)
+        return self._with(stage=stage, parts=_changed(self.parts, changes, "Ω", known))
 
     def with_levels(self, **changes: PartLike | None) -> Design:
         """Give a copy with other levels.
@@ -138,7 +145,7 @@ class Design:
         Design
             The changed copy.
         """
-        return self._with(levels=_changed(self.levels, changes))
+        return self._with(levels=_changed(self.levels, changes, "V", self.stage.levels))
 
     def with_supply(self, **changes: Any) -> Design:
         """Give a copy with another supply.
@@ -153,7 +160,7 @@ class Design:
         Design
             The changed copy.
         """
-        return self._with(supply=replace(self.supply, **changes))
+        return self._with(supply=_replaced(self.supply, "supply", changes))
 
     def with_device(self, **changes: Any) -> Design:
         """Give a copy with another device.
@@ -168,7 +175,7 @@ class Design:
         Design
             The changed copy.
         """
-        return self._with(device=replace(self.device, **changes))
+        return self._with(device=_replaced(self.device, "device", changes))
 
     def with_signal(self, signal: Signal | None) -> Design:
         """Give a copy with another signal description.
@@ -242,11 +249,38 @@ def law_values(
     }
 
 
-def _changed(parts: Named[Part], changes: Mapping[str, PartLike | None]) -> dict[str, PartLike]:
-    kept: dict[str, PartLike] = {n: p for n, p in parts.items() if changes.get(n, p) is not None}
+def _changed(
+    parts: Named[Part], changes: Mapping[str, PartLike | None], unit: str, known: tuple[str, ...]
+) -> dict[str, PartLike]:
+    faults = [
+        unknown_name_fault("part or level of this stage", name, known)
+        for name, change in changes.items()
+        if change is None and name not in known
+    ]
+    kept: dict[str, PartLike] = dict(parts)
     for name, change in changes.items():
         if change is None:
-            continue
-        old = parts.get(name)
-        kept[name] = change if old is None or isinstance(change, Part) else old.with_value(change)
+            kept.pop(name, None)
+        else:
+            kept[name] = _changed_part(parts.get(name), name, change, unit, faults)
+    if faults:
+        raise DesignError.of("these changes", faults)
     return kept
+
+
+def _changed_part(
+    old: Part | None, name: str, change: PartLike, unit: str, faults: list[Fault]
+) -> PartLike:
+    """Put a bare value in place of the old one; the tolerance stays."""
+    if old is None or isinstance(change, Part):
+        return change
+    number = collect(faults, lambda: read(change, unit=unit, name=name))
+    return old if math.isnan(number) else old.with_value(number)
+
+
+def _replaced(subject: Rebuilt, kind: str, changes: Mapping[str, Any]) -> Rebuilt:
+    known = [field.name for field in fields(subject)]
+    faults = [unknown_name_fault(f"field of a {kind}", n, known) for n in changes if n not in known]
+    if faults:
+        raise UnknownNameError.of("these changes", faults)
+    return replace(subject, **changes)

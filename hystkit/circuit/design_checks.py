@@ -2,13 +2,16 @@
 
 from __future__ import annotations
 
+import math
 from collections.abc import Iterator, Mapping
 from typing import TYPE_CHECKING
 
 from hystkit.base.errors import DesignError, Fault
 from hystkit.base.nearest import unknown_name_fault
+from hystkit.base.quantity import read
 from hystkit.circuit.device import Device
 from hystkit.circuit.parts import Part, Supply
+from hystkit.circuit.reading import collect
 
 if TYPE_CHECKING:
     from hystkit.circuit.reading import Quantity
@@ -18,31 +21,56 @@ _LEVELS = ("V_REF", "V_PU", "V_L", "V_OH", "V_OL")
 
 
 def read_parts(
-    *groups: Mapping[str, Part | Quantity],
-) -> tuple[dict[str, Part], dict[str, Part], list[Fault]]:
-    """Read parts and levels, collecting what cannot be read.
+    values: Mapping[str, Part | Quantity], unit: str, faults: list[Fault]
+) -> dict[str, Part | None]:
+    """Read parts or levels.
 
     Parameters
     ----------
-    *groups : mapping of str to Part, float or str
-        The parts, then the levels.
+    values : mapping of str to Part, float or str
+        As they were given.
+    unit : str
+        Unit of bare values, "Ω" or "V".
+    faults : list of Fault
+        Where a fault is added for each value that cannot be read.
 
     Returns
     -------
-    tuple of dict, dict and list of Fault
-        What could be read of either group, and the faults.
+    dict
+        Name to part, None where it could not be read.
     """
-    faults: list[Fault] = []
-    read = [{name: _as_part(name, value, faults) for name, value in g.items()} for g in groups]
-    parts, levels = ({n: p for n, p in group.items() if p is not None} for group in read)
-    return parts, levels, faults
+    return {name: _as_part(name, value, unit, faults) for name, value in values.items()}
+
+
+def read_supply(supply: Supply | Quantity, faults: list[Fault]) -> Supply | None:
+    """Read a supply, of which the positive rail alone may be given.
+
+    Parameters
+    ----------
+    supply : Supply, float or str
+        As it was given.
+    faults : list of Fault
+        Where its faults are added.
+
+    Returns
+    -------
+    Supply or None
+        None where it cannot be used.
+    """
+    if isinstance(supply, Supply):
+        return supply
+    try:
+        return Supply(supply)
+    except DesignError as error:
+        faults.extend(error.faults)
+        return None
 
 
 def design_faults(
     stage: Stage,
     parts: Mapping[str, Part | None],
     levels: Mapping[str, Part | None],
-    supply: Supply,
+    supply: Supply | None,
     device: Device,
 ) -> list[Fault]:
     """Find everything in the values that does not fit the stage.
@@ -53,8 +81,8 @@ def design_faults(
         The circuit form with its optional parts.
     parts, levels : mapping of str to Part
         As read; None where a value could not be read, which is a fault of its own.
-    supply : Supply
-        Rails.
+    supply : Supply or None
+        Rails; None where they could not be read.
     device : Device
         Comparator or op-amp.
 
@@ -66,21 +94,16 @@ def design_faults(
     return [
         *_part_faults(stage, parts),
         *_level_faults(stage, levels),
-        *_supply_faults(stage, supply),
-        *_swing_faults(stage, levels, supply, device),
+        *(_supply_faults(stage, supply) if supply else ()),
+        *(_swing_faults(stage, levels, supply, device) if supply else ()),
     ]
 
 
-def _as_part(name: str, value: Part | Quantity, faults: list[Fault]) -> Part | None:
+def _as_part(name: str, value: Part | Quantity, unit: str, faults: list[Fault]) -> Part | None:
     if isinstance(value, Part):
         return value
-    try:
-        return Part(value)
-    except DesignError as error:
-        faults += [
-            Fault(f"{name}: {f.problem}", f.asked, f.have, f.rule, f.remedy) for f in error.faults
-        ]
-        return None
+    number = collect(faults, lambda: read(value, unit=unit, name=name))
+    return None if math.isnan(number) else Part(number)
 
 
 def _part_faults(stage: Stage, parts: Mapping[str, Part | None]) -> Iterator[Fault]:

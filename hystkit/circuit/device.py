@@ -9,7 +9,7 @@ from hystkit.base.errors import DesignError, Fault
 from hystkit.base.frozen import Named
 from hystkit.base.nearest import unknown_name_fault
 from hystkit.base.quantity import read
-from hystkit.circuit.reading import Quantity, collect, set_frozen
+from hystkit.circuit.reading import Quantity, collect, members, set_frozen
 
 #: Device fields that may be below zero; all the others are magnitudes.
 _SIGNED = {"offset", "bias_plus", "bias_minus", "leakage", "common_mode_low", "common_mode_high"}
@@ -113,7 +113,7 @@ class Device:
         faults: list[Fault] = []
         for field in fields(self):
             value = given[field.name]
-            if field.name in UNITS and value is not None:
+            if field.name in UNITS and not (value is None and field.default is None):
                 value = _device_number(faults, field.name, value)
             set_frozen(self, field.name, value)
         set_frozen(self, "limits", _read_limits(faults, limits or {}, self))
@@ -148,12 +148,24 @@ def _read_limits(
         if name not in LAW_FIELDS:
             faults.append(unknown_name_fault("device field with limits", name, LAW_FIELDS))
             continue
-        low, high = (_device_number(faults, name, end) for end in pair)
-        if not low <= getattr(device, name) <= high:
+        ends = members(pair)
+        if len(ends) != 2:
+            faults.append(
+                Fault(
+                    f"the limits of {name} are not two numbers.",
+                    asked=f"{name}: {pair!r}",
+                    remedy="the lowest and the highest value, such as (-0.002, 0.002)",
+                )
+            )
+            continue
+        low, high = (_device_number(faults, name, end) for end in ends)
+        typical = getattr(device, name)
+        # What could not be read is NaN here, and a fault already.
+        if low > typical or typical > high:
             faults.append(
                 Fault(
                     f"the limits of {name} do not enclose its typical value.",
-                    asked=f"limits {low:g} to {high:g}, {name} = {getattr(device, name):g}",
+                    asked=f"limits {low:g} to {high:g}, {name} = {typical:g}",
                     rule="lowest <= typical <= highest",
                     remedy=f"give {name} itself a value between its limits",
                 )

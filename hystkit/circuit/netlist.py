@@ -43,12 +43,12 @@ class Netlist:
         """Resistors that touch a merged node."""
         return tuple(r for r in self.resistors if node in r.nodes)
 
-    def reach(self, start: str) -> frozenset[str]:
-        """Nodes that a voltage at `start` acts on: through resistors, not past a fixed node."""
+    def reach(self, start: str, *around: str) -> frozenset[str]:
+        """Nodes that a voltage at `start` acts on: not past a fixed node, nor past `around`."""
         seen, front = {start}, [start]
         while front:
             node = front.pop()
-            if node in FIXED_NODES and node != start:
+            if node != start and (node in FIXED_NODES or node in around):
                 continue
             for resistor in self.at(node):
                 for other in resistor.nodes:

@@ -133,5 +133,5 @@ class Supply:
 
 def _read_any(value: Quantity) -> float:
     """Read a resistance or a voltage, whichever unit the text carries."""
-    is_voltage = isinstance(value, str) and value.rstrip().endswith("V")
+    is_voltage = isinstance(value, str) and "V" in value
     return read(value, unit="V" if is_voltage else "Ω")

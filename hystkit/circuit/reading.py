@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 import math
-from collections.abc import Callable
+from collections.abc import Callable, Iterable
 from typing import Any
 
 from hystkit.base.errors import Fault, QuantityError
@@ -31,6 +31,24 @@ def collect(faults: list[Fault], reader: Callable[[], float]) -> float:
     except QuantityError as error:
         faults.extend(error.faults)
         return math.nan
+
+
+def members(value: object) -> tuple[Any, ...]:
+    """Take a collection of numbers apart.
+
+    Parameters
+    ----------
+    value : object
+        A list, a tuple, an array.
+
+    Returns
+    -------
+    tuple
+        Its members; empty for text and for whatever holds none.
+    """
+    if isinstance(value, str) or not isinstance(value, Iterable):
+        return ()
+    return tuple(value)
 
 
 def set_frozen(target: object, name: str, value: Any) -> None:

@@ -92,7 +92,7 @@ def load(path: str | os.PathLike[str]) -> Design:
             have=error.strerror or str(error),
             remedy="the path of a file written by hystkit.save",
         ) from None
-    except ValueError as error:
+    except (ValueError, RecursionError) as error:
         raise RecordError(
             f"{source} is not JSON text.",
             asked=f"a design from {source}",
@@ -193,11 +193,19 @@ def _stage_record(stage: Stage) -> dict[str, Any]:
 
 
 def _stage(record: dict[str, Any]) -> Stage:
-    choices = dict(record)
+    choices = _texts(dict(record), "name")
     elements = choices.pop("elements", None)
     if elements is None:
         return Stage(choices.pop("sense"), **choices)
     return Stage.custom([_element(entry) for entry in elements], **choices)
+
+
+def _texts(values: dict[str, Any], *keys: str) -> dict[str, Any]:
+    """Give the values back if those of these keys are text, where they are there at all."""
+    for key in keys:
+        if not isinstance(values.get(key, ""), str):
+            raise TypeError(f"{key} is not text but {values[key]!r}")
+    return values
 
 
 def _element(entry: list[str]) -> Element:
@@ -212,6 +220,8 @@ def _parts(record: dict[str, Any] | None) -> dict[str, Part]:
             parts[name] = Part(**entry) if isinstance(entry, Mapping) else Part(entry)
         except HystkitError as error:
             faults += [_prefixed(name, fault) for fault in error.faults]
+        except TypeError as error:
+            faults.append(_shapeless(name, error))
     if faults:
         raise RecordError.of("these parts", faults)
     return parts
@@ -224,13 +234,13 @@ def _device(record: dict[str, Any] | None) -> Device:
     ]
     if faults:
         raise RecordError.of("this device", faults)
-    return Device(**(record or {}))
+    return Device(**_texts(record or {}, "name"))
 
 
 def _signal(record: dict[str, Any] | None) -> Signal | None:
     if record is None:
         return None
-    values = dict(record)
+    values = _texts(dict(record), "unit", "name")
     kind = values.pop("kind", None)
     if kind not in _SIGNALS:
         raise RecordError.of(
@@ -240,7 +250,7 @@ def _signal(record: dict[str, Any] | None) -> Signal | None:
 
 
 _BUILDERS: dict[str, Any] = {
-    "name": lambda value: value or "",
+    "name": lambda value: "" if value is None else _texts({"name": value}, "name")["name"],
     "stage": _stage,
     "parts": _parts,
     "supply": lambda value: Supply(**value) if isinstance(value, Mapping) else Supply(value),

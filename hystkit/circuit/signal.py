@@ -2,12 +2,13 @@
 
 from __future__ import annotations
 
-import math
 from dataclasses import dataclass, fields
+from functools import partial
 from typing import TYPE_CHECKING, Any, Protocol, runtime_checkable
 
-from hystkit.base.errors import Fault, QuantityError, SignalError
+from hystkit.base.errors import Fault, SignalError
 from hystkit.base.quantity import read
+from hystkit.circuit.reading import collect, members
 
 if TYPE_CHECKING:
     from collections.abc import Sequence
@@ -90,13 +91,11 @@ class Linear:
         unit: str = "",
         name: str = "signal",
     ) -> None:
-        try:
-            slope = read(per_unit, name="per_unit")
-            offset = read(at_zero, unit="V", name="at_zero")
-            ends = tuple(read(end, name="span") for end in span)
-        except QuantityError as error:
-            raise SignalError.of("this signal", error.faults) from None
-        faults = _linear_faults(slope, ends)
+        faults: list[Fault] = []
+        slope = collect(faults, lambda: read(per_unit, name="per_unit"))
+        offset = collect(faults, lambda: read(at_zero, unit="V", name="at_zero"))
+        ends = tuple(collect(faults, partial(read, end, name="span")) for end in members(span))
+        faults += _linear_faults(slope, ends, span)
         if faults:
             raise SignalError.of("this signal", faults)
         for field, value in zip(fields(self), (slope, offset, ends, unit, name), strict=True):
@@ -138,9 +137,10 @@ class Linear:
         return (volts - self.at_zero) / self.per_unit
 
 
-def _linear_faults(per_unit: float, span: tuple[float, ...]) -> list[Fault]:
+def _linear_faults(per_unit: float, span: tuple[float, ...], given: object) -> list[Fault]:
+    # What could not be read is NaN here, and a fault already.
     faults = []
-    if per_unit == 0 or not math.isfinite(per_unit):
+    if per_unit == 0:
         faults.append(
             Fault(
                 "a slope of zero cannot be read back.",
@@ -149,11 +149,11 @@ def _linear_faults(per_unit: float, span: tuple[float, ...]) -> list[Fault]:
                 remedy="the sensor's sensitivity, negative if its voltage falls",
             )
         )
-    if len(span) != 2 or not span[0] < span[1]:
+    if len(span) != 2 or span[0] >= span[1]:
         faults.append(
             Fault(
                 "the span of a signal is not an interval.",
-                asked=f"span = {span!r}",
+                asked=f"span = {given!r}",
                 rule="two numbers, the lower one first",
                 remedy="the range that occurs in service, such as (0, 2)",
             )

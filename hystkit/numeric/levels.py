@@ -5,8 +5,10 @@ from __future__ import annotations
 import math
 
 from hystkit.circuit.design import Design
+from hystkit.circuit.netlist import netlist
 from hystkit.numeric.compile import kernel
 from hystkit.numeric.extremes import trip_intervals
+from hystkit.numeric.operating import fixed_voltage
 from hystkit.numeric.status import Status
 from hystkit.numeric.trips import TripPoints, trip_points
 from hystkit.numeric.views import Interval, Levels
@@ -35,7 +37,7 @@ def levels(design: Design) -> Levels:
     """
     trips = trip_points(design)
     upper_interval, lower_interval = trip_intervals(design) or (None, None)
-    high, low = output_levels(design, trips)
+    at = _at_trips(design, trips)
     status = Status(int(trips.status))
     return Levels(
         v_ee=design.supply.low_rail,
@@ -44,12 +46,13 @@ def levels(design: Design) -> Levels:
         lower=float(trips.lower),
         width=float(trips.width),
         middle=float(trips.middle),
-        output_high=high,
-        output_low=low,
+        output_high=at["high"]["out"],
+        output_low=at["low"]["out"],
         upper_interval=upper_interval,
         lower_interval=lower_interval,
         reference=design.values.get("V_REF"),
         common_mode=_common_mode(design),
+        pins=_pins(at, trips, upper_interval, lower_interval),
         signal_span=_signal_span(design),
         signal=design.signal,
         ok=status is Status.OK,
@@ -57,28 +60,30 @@ def levels(design: Design) -> Levels:
     )
 
 
-def output_levels(design: Design, trips: TripPoints) -> Interval:
-    """Output voltage in each state at the trip that leaves it.
-
-    Parameters
-    ----------
-    design : Design
-        Gives the values.
-    trips : TripPoints
-        Its trip points, scalar.
-
-    Returns
-    -------
-    tuple of float
-        High and low [V]; NaN where there is no trip.
-    """
+def _at_trips(design: Design, trips: TripPoints) -> dict[str, dict[str, float]]:
+    """Voltages of output and input pins in each state, at the trip that leaves it."""
     compiled = kernel(design.stage)
     at = {compiled.law.upper_state: trips.upper, compiled.law.lower_state: trips.lower}
-    high, low = (
-        float(compiled.voltages(state, design.values, at[state])["out"])
-        for state in ("high", "low")
-    )
-    return high, low
+    merged = netlist(design.elements).merged
+    found = {}
+    for state, trip in at.items():
+        free = compiled.voltages(state, design.values, trip)
+        found[state] = {
+            node: float(free[merged[node]])
+            if merged[node] in free
+            else float(fixed_voltage(merged[node], design.values, trip))
+            for node in ("out", "plus", "minus")
+        }
+    return found
+
+
+def _pins(
+    at: dict[str, dict[str, float]], trips: TripPoints, *intervals: Interval | None
+) -> Interval | None:
+    voltages = [nodes[pin] for nodes in at.values() for pin in ("plus", "minus")]
+    if any(trips.upper in nodes.values() for nodes in at.values()):
+        voltages += [end for interval in intervals if interval for end in interval]
+    return (min(voltages), max(voltages)) if all(map(math.isfinite, voltages)) else None
 
 
 def _common_mode(design: Design) -> Interval | None:

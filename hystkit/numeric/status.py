@@ -18,7 +18,8 @@ class Status(IntEnum):
     NOT_POSITIVE = 2
     RAILS = 3
     OUTPUT_LEVELS = 4
-    NO_HYSTERESIS = 5
+    SENSE = 5
+    NO_HYSTERESIS = 6
 
     @property
     def message(self) -> str:
@@ -32,12 +33,17 @@ _MESSAGES = {
     Status.NOT_POSITIVE: "a resistance is not positive",
     Status.RAILS: "V_CC is not above V_EE",
     Status.OUTPUT_LEVELS: "the high output level is not above the low one",
+    Status.SENSE: "the signal drives the inputs against the stated sense",
     Status.NO_HYSTERESIS: "the upper trip is not above the lower: no hysteresis",
 }
 
 
 def status_of(
-    values: Mapping[str, Any], parts: tuple[str, ...], upper: Any, lower: Any
+    values: Mapping[str, Any],
+    parts: tuple[str, ...],
+    upper: Any,
+    lower: Any,
+    against_sense: Any = False,
 ) -> NDArray[np.int8]:
     """Judge every element.
 
@@ -49,6 +55,8 @@ def status_of(
         Names of the resistors among them.
     upper, lower : float or ndarray
         Computed trip points [V].
+    against_sense : bool or ndarray of bool, default False
+        Whether a rising signal drives the inputs the other way than the stage states.
 
     Returns
     -------
@@ -56,18 +64,21 @@ def status_of(
         A `Status` code for each element, the first that applies.
     """
     high = values.get("V_OH", values.get("V_PU", np.inf))
-    v_ee = values.get("V_EE", 0.0)
-    finite = np.logical_and.reduce(np.broadcast_arrays(*map(np.isfinite, values.values())))
-    positive = np.logical_and.reduce(
-        np.broadcast_arrays(*(np.greater(values[name], 0) for name in parts))
-    )
+    shape = np.broadcast_shapes(*map(np.shape, values.values()), np.shape(upper))
+    status = np.zeros(shape, dtype=np.int8)
     # An impossible element may hold inf - inf; the comparison is false there, as it should be.
-    conditions = [
-        ~finite,
-        ~positive,
-        ~np.greater(values["V_CC"], v_ee),
-        ~np.greater(high, values["V_OL"]),
-        ~(np.greater(upper, lower) & np.isfinite(upper) & np.isfinite(lower)),
-    ]
-    codes = [int(s) for s in Status if s is not Status.OK]
-    return np.select(np.broadcast_arrays(*conditions), codes, default=0).astype(np.int8)
+    switches = np.isfinite(upper) & np.isfinite(lower) & np.greater(upper, lower)
+    _mark(status, Status.NO_HYSTERESIS, switches)
+    _mark(status, Status.OUTPUT_LEVELS, np.greater(high, values["V_OL"]))
+    _mark(status, Status.RAILS, np.greater(values["V_CC"], values.get("V_EE", 0.0)))
+    for name in parts:
+        _mark(status, Status.NOT_POSITIVE, np.greater(values[name], 0))
+    for value in values.values():
+        _mark(status, Status.NOT_FINITE, np.isfinite(value))
+    return status
+
+
+def _mark(status: NDArray[np.int8], code: Status, good: Any) -> None:
+    """Write a code wherever `good` is false; codes that go first are marked last."""
+    if not good.all():
+        status[np.broadcast_to(~good, status.shape)] = code

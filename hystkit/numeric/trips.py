@@ -2,20 +2,22 @@
 
 from __future__ import annotations
 
-from collections.abc import Sequence
+from collections.abc import Mapping, Sequence
 from dataclasses import dataclass
 from typing import Any
 
 import numpy as np
 from numpy.typing import ArrayLike, NDArray
 
-from hystkit.base.errors import UnknownNameError
+from hystkit.base.errors import Fault, InputError, QuantityError, UnknownNameError
 from hystkit.base.fields import Field, Viewed
 from hystkit.base.nearest import unknown_name_fault
 from hystkit.base.quantity import read
 from hystkit.circuit.design import Design, law_values
 from hystkit.circuit.device import LAW_FIELDS, UNITS
+from hystkit.circuit.reading import collect
 from hystkit.circuit.signal import Signal
+from hystkit.circuit.stage import Stage
 from hystkit.numeric.compile import kernel
 from hystkit.numeric.status import Status, status_of
 
@@ -127,7 +129,9 @@ def trip_points(design: Design, **overrides: ArrayLike | str) -> TripPoints:
     UnknownNameError
         If an override names no symbol of the design's law; every such name is reported.
     QuantityError
-        If a text cannot be read as a number.
+        If a value cannot be read as a number or an array of numbers; every such one is reported.
+    InputError
+        If the shapes do not broadcast.
 
     Notes
     -----
@@ -144,7 +148,8 @@ def trip_points(design: Design, **overrides: ArrayLike | str) -> TripPoints:
     values = overridden(design, overrides)
     with np.errstate(all="ignore"):
         upper, lower = kernel(design.stage).trips(values)
-        status = status_of(values, design.stage.parts, upper, lower)
+        against = design.stage.is_custom and _against_sense(design.stage, values)
+        status = status_of(values, design.stage.parts, upper, lower, against)
     keep = status == Status.OK
     upper, lower = (np.where(keep, trip, np.nan)[()] for trip in (upper, lower))
     return TripPoints(upper, lower, upper - lower, (upper + lower) / 2, status[()], design.signal)
@@ -169,7 +174,7 @@ def overridden(design: Design, overrides: dict[str, Any]) -> dict[str, Any]:
     faults = [unknown_name_fault("symbol", n, known) for n in overrides if n not in known]
     if faults:
         raise UnknownNameError.of("these overrides", faults)
-    given = {name: _number(name, value) for name, value in overrides.items()}
+    given = _numbers(overrides)
     device = {name: given.pop(name, value) for name, value in design.device.law_fields.items()}
     levels = {name: part.value for name, part in design.levels.items()}
     v_cc = given.get("V_CC", design.supply.v_cc)
@@ -178,11 +183,47 @@ def overridden(design: Design, overrides: dict[str, Any]) -> dict[str, Any]:
     return {**design.values, **following, **given}
 
 
-def _number(name: str, value: Any) -> float | NDArray[np.float64]:
+def _against_sense(stage: Stage, values: Mapping[str, Any]) -> Any:
+    """Tell where the values of a custom circuit turn the sense that was stated for it."""
+    compiled = kernel(stage)
+    ends = [compiled.voltages(compiled.law.upper_state, values, signal) for signal in (0.0, 1.0)]
+    at_zero, at_one = (end["plus"] - end["minus"] for end in ends)
+    return at_one >= at_zero if stage.sense == "inverting" else at_one <= at_zero
+
+
+def _numbers(overrides: Mapping[str, Any]) -> dict[str, Any]:
+    faults: list[Fault] = []
+    given = {name: _number(name, value, faults) for name, value in overrides.items()}
+    if faults:
+        raise QuantityError.of("these overrides", faults)
+    shapes = {name: np.shape(value) for name, value in given.items() if np.ndim(value)}
+    try:
+        np.broadcast_shapes(*shapes.values())
+    except ValueError:
+        raise InputError(
+            "these arrays do not broadcast.",
+            have=", ".join(f"{name} of shape {shape}" for name, shape in shapes.items()),
+            rule="shapes are equal, or 1, axis by axis from the last",
+            remedy="arrays of one length, or an axis of its own for each: R_T=x[:, None]",
+        ) from None
+    return given
+
+
+def _number(name: str, value: Any, faults: list[Fault]) -> float | NDArray[np.float64]:
     if isinstance(value, str):
         unit = UNITS.get(name) or {"R": "Ω", "V": "V", "I": "A"}[name[0]]
-        return read(value, unit=unit, name=name)
-    return np.asarray(value, dtype=float)[()]
+        return collect(faults, lambda: read(value, unit=unit, name=name))
+    try:
+        return np.asarray(value, dtype=float)[()]
+    except (TypeError, ValueError):
+        faults.append(
+            Fault(
+                f"{name} is not an array of numbers.",
+                have=repr(value),
+                remedy="a number, a text such as 4k7, or an array of numbers",
+            )
+        )
+        return np.float64(np.nan)
 
 
 def _span(values: Any) -> float | tuple[float, float]:

@@ -34,6 +34,9 @@ class Levels:
         Reference voltage, None where the reference is a divider or ground.
     common_mode : tuple of float or None
         Common-mode input range of the device, None where it is not stated.
+    pins : tuple of float or None
+        Lowest and highest voltage of both input pins, at both trips: what has to stay within
+        `common_mode`. Over the tolerances where a pin is the signal itself. None without trips.
     signal_span : tuple of float or None
         Lowest and highest signal voltage, None without a signal description.
     signal : Signal or None
@@ -56,6 +59,7 @@ class Levels:
     lower_interval: Interval | None = None
     reference: float | None = None
     common_mode: Interval | None = None
+    pins: Interval | None = None
     signal_span: Interval | None = None
     signal: Signal | None = None
     ok: bool = True

@@ -4,6 +4,10 @@ from __future__ import annotations
 
 import sympy as sp
 
+#: Operations times symbols above which factoring takes longer than anyone waits; the built-in
+#: forms stay below 600.
+LARGEST = 1000
+
 
 def by_source(expression: sp.Expr, sources: tuple[sp.Symbol, ...]) -> sp.Expr:
     """Arrange an expression that is linear in its sources.
@@ -19,8 +23,11 @@ def by_source(expression: sp.Expr, sources: tuple[sp.Symbol, ...]) -> sp.Expr:
     -------
     sympy.Expr
         Equal to `expression`, one fraction for each denominator that occurs; two sources whose
-        coefficients are opposite or equal stand together as their difference or sum.
+        coefficients are opposite or equal stand together as their difference or sum. Left as it
+        is where it is larger than `LARGEST`: the formula of a dense network of one's own.
     """
+    if expression.count_ops() * len(expression.free_symbols) > LARGEST:
+        return expression
     shares = {s: sp.factor(sp.together(expression.diff(s))) for s in sources}
     terms = _paired({s: share for s, share in shares.items() if share != 0})
     if not terms:

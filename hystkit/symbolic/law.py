@@ -372,7 +372,11 @@ def _derive(stage: Stage) -> SwitchingLaw:
     states = _mapped(solved, ledger.shared_names())
     definitions = ledger.definitions()
     expressions = [e for law in states.values() for e in (law.trip, *law.potentials.values())]
-    used = {s.name for e in expressions for s in expand(e, definitions).free_symbols}
+    used = {
+        s.name
+        for e in (*expressions, *(row.expression for row in definitions))
+        for s in e.free_symbols
+    }
     non_ideal = tuple(name for name in NON_IDEAL if name in used)
     return SwitchingLaw(stage, non_ideal, definitions, states)
 

@@ -86,7 +86,7 @@ class Ledger:
         return new
 
     def _free_stem(self, base: str, suffix: str) -> str:
-        """Number what would otherwise take the name of another quantity."""
+        """Give a name that no other quantity has, numbered where it must be."""
         numbered = (base + (str(number) if number > 1 else "") for number in count(1))
         return next(stem for stem in numbered if symbol(stem + suffix) not in self._rows)
 

@@ -24,10 +24,8 @@ class LawPrinter(LatexPrinter):
 
     def _print_Mul(self, expr: sp.Expr) -> str:  # noqa: N802
         # A sum of fractions stands beside the bar, not above it, where it would be set small.
-        terms = [t for f in expr.args if f.is_Add for t in f.args]
-        nested = any(map(_is_divisor, (f for t in terms for f in sp.Mul.make_args(t))))
         outer = self._settings["long_frac_ratio"]
-        self._settings["long_frac_ratio"] = 0.1 if nested else None
+        self._settings["long_frac_ratio"] = 0.1 if _holds_fractions(expr) else None
         try:
             return str(super()._print_Mul(expr))
         finally:
@@ -101,7 +99,8 @@ def write_lines(expression: sp.Expr, names: dict[sp.Symbol, str] | None = None) 
 def _product_lines(expression: sp.Expr, names: dict[sp.Symbol, str] | None) -> list[str]:
     """Break a product inside its widest sum; a fraction stays whole."""
     sums = [factor for factor in expression.args if factor.is_Add]
-    if not sums or any(map(_is_divisor, expression.args)):
+    fraction = any(map(_is_divisor, expression.args)) and not _holds_fractions(expression)
+    if not sums or fraction:
         return [write_expression(expression, names)]
     inner = max(sums, key=lambda factor: (width(factor, bool(names)), str(factor)))
     front = sp.Mul(*(factor for factor in expression.args if factor is not inner))
@@ -150,7 +149,8 @@ def width(expression: sp.Expr, numeric: bool = False) -> float:
     if below:
         above = sp.Mul(*(f for f in sp.Mul.make_args(expression) if f not in below))
         divisor = sp.Mul(*(1 / f for f in below))
-        return max(width(above, numeric), width(divisor, numeric)) + 0.5
+        widths = width(above, numeric), width(divisor, numeric)
+        return (sum(widths) + 2.0 if _holds_fractions(expression) else max(widths)) + 0.5
     if expression.is_Mul:
         brackets = sum(2.0 for factor in expression.args if factor.is_Add)
         return (
@@ -180,6 +180,12 @@ def fits(expression: sp.Expr) -> bool:
 
 def _is_divisor(factor: sp.Expr) -> bool:
     return bool(factor.is_Pow and factor.exp.is_negative)
+
+
+def _holds_fractions(product: sp.Expr) -> bool:
+    """Tell whether a product has a sum of fractions among its factors."""
+    terms = [term for factor in product.args if factor.is_Add for term in factor.args]
+    return any(map(_is_divisor, (f for term in terms for f in sp.Mul.make_args(term))))
 
 
 def _rank(term: sp.Expr) -> tuple[int, str]:

@@ -9,9 +9,13 @@ from hystkit.base.nearest import unknown_name_fault
 from hystkit.base.quantity import show_latex
 from hystkit.circuit.design import Design
 from hystkit.symbolic.law import SwitchingLaw
+from hystkit.symbolic.printing import LINE_WIDTH, width
 from hystkit.symbolic.steps import derivation, equation
 from hystkit.symbolic.symbols import meaning
 from hystkit.symbolic.tables import PartsAndTrips, exact_values
+
+# Room that a result takes at the end of a line, in letters.
+_RESULT_WIDTH = 10.0
 
 VARIANTS = ("formula", "derivation", "numbers", "table")
 
@@ -95,11 +99,15 @@ def _number_lines(law: SwitchingLaw, design: Design) -> list[str]:
     lines = []
     for (left, right), template in zip(law.rows, _templates(law), strict=True):
         exact[left] = right.xreplace(exact)
-        unit = units.get(left.name, "V")
+        unit = units.get(left.name, "V").replace("1", "")  # a ratio carries no unit
         value = float(exact[left])
         shown[left.name] = _number(value, unit)
         filled = [_fill(line, shown) for line in template]
-        filled[-1] += f" = {show_latex(value, unit)}"
+        result = f"= {show_latex(value, unit)}"
+        if len(filled) == 1 and width(right, numeric=True) <= LINE_WIDTH - _RESULT_WIDTH:
+            filled[0] += f" {result}"
+        else:
+            filled.append(f"&\\quad {result}")
         lines += filled
     return lines
 

@@ -1,0 +1,8 @@
+"""Spread over tolerances, supply, device and temperature."""
+
+from __future__ import annotations
+
+from hystkit.analyses.spread.result import MeasurandSpread, Spread
+from hystkit.analyses.spread.spread import spread
+
+__all__ = ["MeasurandSpread", "Spread", "spread"]
