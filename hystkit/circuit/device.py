@@ -37,6 +37,9 @@ UNITS = {
     "common_mode_low": "V",
     "common_mode_high": "V",
     "offset_drift": "V",
+    "gain": "",
+    "source_current": "A",
+    "sink_current": "A",
 }
 
 
@@ -64,6 +67,10 @@ class Device:
         Where it ends, below V_CC [V]; may be negative. Not stated when left out.
     offset_drift : float or str, default 0
         Magnitude of the offset's temperature drift [V/K].
+    gain : float, optional
+        Open-loop voltage gain; not stated when left out.
+    source_current, sink_current : float or str, optional
+        Most that the output may source when high and sink when low [A]; not stated when left out.
     limits : mapping of str to pair, optional
         Lowest and highest value of fields that enter the law, as the datasheet guarantees them;
         the field itself is the typical value between them.
@@ -88,6 +95,9 @@ class Device:
     common_mode_low: float | None = None
     common_mode_high: float | None = None
     offset_drift: float = 0.0
+    gain: float | None = None
+    source_current: float | None = None
+    sink_current: float | None = None
     limits: Named[tuple[float, float]] = Named()  # noqa: RUF009 - immutable
     name: str = ""
 
@@ -106,6 +116,9 @@ class Device:
         common_mode_low: Quantity | None = None,
         common_mode_high: Quantity | None = None,
         offset_drift: Quantity = 0.0,
+        gain: Quantity | None = None,
+        source_current: Quantity | None = None,
+        sink_current: Quantity | None = None,
         limits: Mapping[str, tuple[Quantity, Quantity]] | None = None,
         name: str = "",
     ) -> None:

@@ -82,7 +82,8 @@ class ControlNet:
         """The corner that `best` is taken in, name to value."""
         place = np.unravel_index(int(self._corners.argmax()), self._corners.shape)
         pairs = zip(self.intervals, place, strict=True)
-        shares = self.above[(slice(1, None), *(-int(end) for end in place))]
+        ends_of_axes: Any = (slice(1, None), *(-int(end) for end in place))
+        shares = self.above[ends_of_axes]
         ends = self.middles + np.sign(shares) * self.halves
         values = [pair[int(end)] for pair, end in pairs] + [float(end) for end in ends]
         return dict(zip((*self.resistances, *self.sources), values, strict=True))
@@ -200,9 +201,7 @@ class _Place:
         moving = [names.index(symbol) for symbol in self.intervals]
         still = [i for i, name in enumerate(names) if name not in self.intervals]
         point = np.array([self.fixed[names[i]] for i in still])
-        weights = polynomial.coefficients * np.prod(
-            point ** polynomial.exponents[:, still], axis=1
-        )
+        weights = polynomial.coefficients * np.prod(point ** polynomial.exponents[:, still], axis=1)
         net = np.zeros([degrees[symbol] + 1 for symbol in self.intervals])
         np.add.at(net, tuple(polynomial.exponents[:, moving].T), weights)
         for axis, (symbol, pair) in enumerate(self.intervals.items()):

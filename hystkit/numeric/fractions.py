@@ -180,9 +180,7 @@ def gains(design: Design, name: str) -> dict[str, float]:
 def _follow(design: Design, given: Mapping[str, float]) -> dict[str, float]:
     device = {field: given.get(field, 0.0) for field in LAW_FIELDS}
     levels = {level: given.get(level, 0.0) for level in design.levels}
-    return law_values(
-        design.stage, device, levels, given.get("V_CC", 0.0), given.get("V_EE", 0.0)
-    )
+    return law_values(design.stage, device, levels, given.get("V_CC", 0.0), given.get("V_EE", 0.0))
 
 
 def slopes(design: Design, names: Iterable[str]) -> dict[str, dict[str, float]]:
@@ -203,8 +201,7 @@ def slopes(design: Design, names: Iterable[str]) -> dict[str, dict[str, float]]:
     """
     wanted = {name: gains(design, name) for name in names}
     by_symbol = {
-        kind: fraction.slopes(design.values)
-        for kind, fraction in fractions(design, wanted).items()
+        kind: fraction.slopes(design.values) for kind, fraction in fractions(design, wanted).items()
     }
     return {
         kind: {

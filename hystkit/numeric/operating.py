@@ -154,3 +154,41 @@ def _current_out_of(node: str, resistors: tuple[Any, ...], currents: Mapping[str
         elif node == resistor.node_b:
             total = total - currents[resistor.name]
     return total
+
+
+def feedback_factor(stage: Stage, state: str, values: Mapping[str, Any]) -> Any:
+    """Share of a move of the output node that arrives between the inputs.
+
+    Parameters
+    ----------
+    stage : Stage
+        The circuit.
+    state : {"high", "low"}
+        Output state, for the shape of `values` only: the share is that of the network.
+    values : mapping of str to float or ndarray
+        Every symbol of the full law; arrays broadcast.
+
+    Returns
+    -------
+    float or ndarray
+        d(v(plus) - v(minus)) / dv(out) with the signal held; positive for positive feedback.
+
+    Notes
+    -----
+    A quotient of two exact derivatives with respect to what drives the output.
+    """
+    names, function = _feedback_factor(stage, state)
+    between, out = function(*(values[name] for name in names))
+    return between / out
+
+
+@lru_cache(maxsize=256)
+def _feedback_factor(stage: Stage, state: str) -> Compiled:
+    law = kernel(stage).law
+    merged = netlist(stage.elements).merged
+    zero = sp.S.Zero
+    found = {n: law.states[state].potentials.get(merged[n], zero) for n in ("plus", "minus", "out")}
+    plus, minus, out = (expand(v, law.definitions) for v in found.values())
+    opened = state == "high" and stage.output == "open-collector"
+    driver = symbol("I_LK") if opened else symbol("V_OH" if state == "high" else "V_OL")
+    return compiled(((plus - minus).diff(driver), out.diff(driver)))

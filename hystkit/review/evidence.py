@@ -1,0 +1,152 @@
+"""What the checks look at: evaluated once for a design, and only when a check asks for it."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+from functools import cached_property
+
+import numpy as np
+
+from hystkit.circuit.design import Design
+from hystkit.circuit.netlist import netlist
+from hystkit.numeric.compile import kernel
+from hystkit.numeric.levels import levels
+from hystkit.numeric.operating import (
+    OperatingPoint,
+    feedback_factor,
+    input_resistance,
+    operating_point,
+)
+from hystkit.numeric.trips import TripPoints, trip_points
+from hystkit.numeric.views import Levels
+
+STATES = ("high", "low")
+
+
+@dataclass(frozen=True)
+class Evidence:
+    """A design and everything that its checks need.
+
+    Attributes
+    ----------
+    design : Design
+        What is reviewed.
+    load : {"high", "low"}
+        Output state in which the load is on.
+    safe : {"on", "off"} or None
+        Declared safe state of the load.
+    start : {"high", "low"} or None
+        Output state that the stage is made to start in; None where nothing is provided.
+    """
+
+    design: Design
+    load: str = "high"
+    safe: str | None = None
+    start: str | None = None
+
+    @cached_property
+    def levels(self) -> Levels:
+        """Everything on the volt axis."""
+        return levels(self.design)
+
+    @property
+    def width(self) -> float:
+        """Nominal width [V]."""
+        return self.levels.width
+
+    @cached_property
+    def trip_of(self) -> dict[str, float]:
+        """Output state to the trip that leaves it [V]."""
+        law = kernel(self.design.stage).law
+        return {law.upper_state: self.levels.upper, law.lower_state: self.levels.lower}
+
+    @property
+    def state_above(self) -> str:
+        """Output state with the signal above the band."""
+        return "low" if self.design.stage.sense == "inverting" else "high"
+
+    def state_at(self, volts: float) -> str | None:
+        """Output state for a signal that stays; None inside the band, where both are possible.
+
+        Parameters
+        ----------
+        volts : float
+            Signal voltage [V].
+
+        Returns
+        -------
+        str or None
+            "high", "low" or None.
+        """
+        if volts >= self.levels.upper:
+            return self.state_above
+        if volts <= self.levels.lower:
+            return "high" if self.state_above == "low" else "low"
+        return None
+
+    @cached_property
+    def signal_ends(self) -> tuple[float, ...]:
+        """Signal voltages that occur [V]: both trips and, where known, both ends of the span."""
+        return (self.levels.lower, self.levels.upper, *(self.levels.signal_span or ()))
+
+    @cached_property
+    def points(self) -> tuple[OperatingPoint, ...]:
+        """Operating points of both states at every signal voltage at which they can last."""
+        stage, values = self.design.stage, self.design.values
+        return tuple(
+            operating_point(stage, state, values, volts)
+            for state in STATES
+            for volts in self.signal_ends
+            if self.state_at(volts) in (state, None) or volts == self.trip_of[state]
+        )
+
+    def pin_voltages(self) -> list[float]:
+        """Voltages of both input pins at every operating point [V]."""
+        merged = netlist(self.design.elements).merged
+        return [float(p.voltages[merged[pin]]) for p in self.points for pin in ("plus", "minus")]
+
+    def input_resistances(self) -> dict[str, float]:
+        """Largest resistance that each pin sees [Ohm]."""
+        stage, values = self.design.stage, self.design.values
+        return {
+            pin: max(float(input_resistance(stage, pin, state, values)) for state in STATES)
+            for pin in ("plus", "minus")
+        }
+
+    def without(self, **zeros: float) -> TripPoints:
+        """Trip points with some symbols at other values.
+
+        Parameters
+        ----------
+        **zeros : float
+            Overrides as for `trip_points`.
+
+        Returns
+        -------
+        TripPoints
+            Of the changed design.
+        """
+        return trip_points(self.design, **zeros)
+
+    def shift(self, **changes: float) -> float:
+        """Largest move of a trip when some symbols take other values [V].
+
+        Parameters
+        ----------
+        **changes : float
+            Overrides as for `trip_points`.
+
+        Returns
+        -------
+        float
+            [V]; NaN where the changed design does not switch.
+        """
+        other = trip_points(self.design, **changes)
+        moves = (other.upper - self.levels.upper, other.lower - self.levels.lower)
+        return float(np.max(np.abs(moves)))
+
+    def feedback(self) -> float:
+        """Smallest share of the output's move that arrives between the inputs."""
+        return min(
+            float(feedback_factor(self.design.stage, state, self.design.values)) for state in STATES
+        )

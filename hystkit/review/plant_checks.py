@@ -1,0 +1,121 @@
+"""Checks on what surrounds the stage: the signal's reach, sensor faults, start-up."""
+
+from __future__ import annotations
+
+from collections.abc import Iterator
+
+from hystkit.base.quantity import show
+from hystkit.review.evidence import Evidence
+from hystkit.review.finding import Finding
+from hystkit.review.trip_checks import Check
+
+
+def reach(evidence: Evidence) -> Iterator[Finding]:
+    """Check that the signal passes both trips within its span.
+
+    Parameters
+    ----------
+    evidence : Evidence
+        The design.
+
+    Yields
+    ------
+    Finding
+        Distance of the worst trip from the end of the span.
+    """
+    found = evidence.levels
+    if found.signal_span is None:
+        yield Finding("reach", "note", "signal not described", remedy="signal=hk.signals...")
+        return
+    low, high = found.signal_span
+    margin = min(found.lower - low, high - found.upper)
+    yield Finding(
+        "reach",
+        "pass" if margin > 0 else "fault",
+        f"the signal spans {show(low, 'V')} to {show(high, 'V')}",
+        margin,
+        "V",
+        "" if margin > 0 else "trips inside the span, or the stage sticks in one state",
+    )
+
+
+def sensor_faults(evidence: Evidence) -> Iterator[Finding]:
+    """Tell what the load does when the sensor is open or shorted.
+
+    Parameters
+    ----------
+    evidence : Evidence
+        The design.
+
+    Yields
+    ------
+    Finding
+        One for open and one for short, where the signal tells its reading.
+    """
+    signal = evidence.design.signal
+    for name, reading in (("open", "on_open"), ("short", "on_short")):
+        volts = getattr(signal, reading, None)
+        check = f"sensor {name}"
+        if signal is None:
+            return
+        if volts is None:
+            yield Finding(check, "note", "reading not known", remedy="test it on the built stage")
+            continue
+        state = evidence.state_at(float(volts))
+        if state is None:
+            yield Finding(
+                check,
+                "warning",
+                f"reads {show(float(volts), 'V')}, inside the band: the load stays as it is",
+                remedy="trips that leave this reading outside the band",
+            )
+            continue
+        on = state == evidence.load
+        text = f"reads {show(float(volts), 'V')}: the load is {'on' if on else 'off'}"
+        if evidence.safe is None:
+            yield Finding(check, "note", f"{text}; no safe state declared", remedy="safe=...")
+            continue
+        good = on == (evidence.safe == "on")
+        yield Finding(
+            check,
+            "pass" if good else "fault",
+            f"{text}, safe is {evidence.safe}",
+            remedy="" if good else "the sensor in the other arm, the other sense, or a watch on it",
+        )
+
+
+def start_up(evidence: Evidence) -> Iterator[Finding]:
+    """Tell what decides the state when the supply comes up inside the band.
+
+    Parameters
+    ----------
+    evidence : Evidence
+        The design.
+
+    Yields
+    ------
+    Finding
+        Whether the start state is provided for, and whether it is the safe one.
+    """
+    found = evidence.levels
+    band = f"between {show(found.lower, 'V')} and {show(found.upper, 'V')}"
+    if evidence.start is None:
+        yield Finding(
+            "start-up",
+            "note",
+            f"with the signal {band} at power-up or after a brown-out either state may result",
+            remedy="a reset or a capacitor that decides it; then start=...",
+        )
+        return
+    on = evidence.start == evidence.load
+    text = f"starts with the load {'on' if on else 'off'} when the signal is {band}"
+    wrong = evidence.safe is not None and on != (evidence.safe == "on")
+    yield Finding(
+        "start-up",
+        "warning" if wrong else "pass",
+        f"{text}, safe is {evidence.safe}" if evidence.safe else text,
+        remedy="a start in the other state" if wrong else "",
+    )
+
+
+PLANT_CHECKS: tuple[Check, ...] = (reach, sensor_faults, start_up)
