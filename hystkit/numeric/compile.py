@@ -12,7 +12,7 @@ from sympy.printing.numpy import NumPyPrinter
 
 from hystkit.circuit.stage import Stage
 from hystkit.symbolic.law import SwitchingLaw, derive
-from hystkit.symbolic.ledger import expand
+from hystkit.symbolic.ledger import Definition, needed
 
 #: Names of the arguments in order, and the function of them.
 Compiled = tuple[tuple[str, ...], Callable[..., Any]]
@@ -70,16 +70,14 @@ class Kernel:
 
     @cached_property
     def _trips(self) -> Compiled:
-        return compiled((self.law.upper, self.law.lower))
+        return compiled(self.law.named, self.law.definitions)
 
     @cached_property
     def _voltages(self) -> dict[str, tuple[tuple[str, ...], tuple[str, ...], Callable[..., Any]]]:
         return {
             state: (
                 tuple(found.potentials),
-                *compiled(
-                    tuple(expand(v, self.law.definitions) for v in found.potentials.values())
-                ),
+                *compiled(tuple(found.potentials.values()), self.law.definitions),
             )
             for state, found in self.law.states.items()
         }
@@ -102,22 +100,30 @@ def kernel(stage: Stage) -> Kernel:
     return Kernel(derive(stage))
 
 
-def compiled(expressions: tuple[sp.Expr, ...]) -> Compiled:
+def compiled(
+    expressions: tuple[sp.Expr, ...], definitions: tuple[Definition, ...] = ()
+) -> Compiled:
     """Compile expressions into one function with common parts evaluated once.
 
     Parameters
     ----------
     expressions : tuple of sympy.Expr
         In symbols of a law.
+    definitions : tuple of Definition
+        Of the same law: its named quantities are the common parts. Put back in, those of a dense
+        network would grow without end.
 
     Returns
     -------
     tuple
         Names of the arguments in order, and the function; it returns one value an expression.
     """
-    symbols = sorted(set().union(*(e.free_symbols for e in expressions)), key=lambda s: s.name)
+    rows, leaves = needed(expressions, definitions)
+    symbols = sorted(leaves, key=lambda s: s.name)
+    named = [(row.symbol, row.expression) for row in rows]
+    shared = (lambda given: (named, given)) if named else True
     printer = _Printer({"fully_qualified_modules": False, "inline": True})
-    function = sp.lambdify(symbols, expressions, modules="numpy", printer=printer, cse=True)
+    function = sp.lambdify(symbols, expressions, modules="numpy", printer=printer, cse=shared)
     return tuple(s.name for s in symbols), function
 
 

@@ -194,18 +194,27 @@ class _Place:
     intervals: dict[str, Interval]
     fixed: dict[str, Any]
 
+    @cached_property
+    def degrees(self) -> list[int]:
+        """Degree along each axis."""
+        return [self.fraction.degrees[symbol] for symbol in self.intervals]
+
+    @cached_property
+    def matrices(self) -> list[Array]:
+        """From powers to control points, along each axis."""
+        return [_polar(d, p) for d, p in zip(self.degrees, self.intervals.values(), strict=True)]
+
     def points(self, polynomial: Polynomial) -> Array:
         """Control points, one axis an interval."""
         names = self.fraction.resistances
-        degrees = self.fraction.degrees
         moving = [names.index(symbol) for symbol in self.intervals]
         still = [i for i, name in enumerate(names) if name not in self.intervals]
         point = np.array([self.fixed[names[i]] for i in still])
         weights = polynomial.coefficients * np.prod(point ** polynomial.exponents[:, still], axis=1)
-        net = np.zeros([degrees[symbol] + 1 for symbol in self.intervals])
+        net = np.zeros([degree + 1 for degree in self.degrees])
         np.add.at(net, tuple(polynomial.exponents[:, moving].T), weights)
-        for axis, (symbol, pair) in enumerate(self.intervals.items()):
-            net = _along(_polar(degrees[symbol], pair), net, axis)
+        for axis, matrix in enumerate(self.matrices):
+            net = _along(matrix, net, axis)
         return net
 
 

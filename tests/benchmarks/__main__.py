@@ -6,13 +6,14 @@ import os
 import platform
 import sys
 
-from tests.benchmarks import forms, imports, slider
+from tests.benchmarks import forms, imports, slider, spread
 
 
 def main() -> int:
-    print(f"Python {platform.python_version()}, {os.cpu_count()} cores; medians of one run\n")
+    machine = f"Python {platform.python_version()}, {os.cpu_count()} cores"
+    print(f"{machine}; processor times, medians of one run\n")
     missed = 0
-    for benchmark in (imports, forms, slider):
+    for benchmark in (imports, forms, slider, spread):
         for comparison in benchmark.comparisons():
             print(comparison, flush=True)
             missed += not comparison.passed

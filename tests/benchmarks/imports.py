@@ -4,7 +4,7 @@ from __future__ import annotations
 
 from tests.benchmarks.measure import Comparison, in_fresh_process
 
-IMPORT = "start = perf_counter()\nimport {name}\nelapsed = perf_counter() - start"
+IMPORT = "start = process_time()\nimport {name}\nelapsed = process_time() - start"
 
 
 def comparisons() -> list[Comparison]:

@@ -1,4 +1,8 @@
-"""Measure two things in one run and set them side by side."""
+"""Measure two things in one run and set them side by side.
+
+Times are processor times of one process, so that other work on the machine does not count. All
+that is measured here runs on one thread, so on an idle machine they are what a clock shows.
+"""
 
 from __future__ import annotations
 
@@ -7,7 +11,7 @@ import sys
 from collections.abc import Callable
 from dataclasses import dataclass
 from statistics import median
-from time import perf_counter
+from time import process_time
 
 from tests.project.source import ROOT
 
@@ -57,9 +61,10 @@ def shown(seconds: float) -> str:
 def in_fresh_process(code: str, *, repeat: int = 5) -> float:
     """Median of the time [s] that `code` reports, run in `repeat` fresh interpreters.
 
-    The code sets ``elapsed``. One run goes before, so that byte code and disk are warm.
+    The code sets ``elapsed`` from ``process_time``. One run goes before, so that byte code and
+    disk are warm.
     """
-    program = f"from time import perf_counter\n{code}\nprint(elapsed)"
+    program = f"from time import process_time\n{code}\nprint(elapsed)"
     command = [sys.executable, "-c", program]
     times = []
     for _ in range(repeat + 1):
@@ -70,17 +75,15 @@ def in_fresh_process(code: str, *, repeat: int = 5) -> float:
     return median(times[1:])
 
 
-def alternating(
-    one: Callable[[int], object], other: Callable[[int], object], *, rounds: int = 15
-) -> tuple[float, float]:
-    """Median time [s] of each call, taken in turns so that both see the same machine.
+def alternating(*calls: Callable[[int], object], rounds: int = 15) -> tuple[float, ...]:
+    """Median time [s] of each call, taken in turns so that all see the same machine.
 
     Each call is given the number of its round, so that it has something new to do.
     """
-    times: tuple[list[float], list[float]] = ([], [])
+    times: list[list[float]] = [[] for _ in calls]
     for turn in range(rounds + 1):
-        for work, found in zip((one, other), times, strict=True):
-            start = perf_counter()
+        for work, found in zip(calls, times, strict=True):
+            start = process_time()
             work(turn)
-            found.append(perf_counter() - start)
-    return median(times[0][1:]), median(times[1][1:])
+            found.append(process_time() - start)
+    return tuple(median(found[1:]) for found in times)

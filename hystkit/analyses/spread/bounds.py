@@ -16,7 +16,7 @@ from hystkit.numeric.views import Interval
 #: What an extreme rests on; see `Bound`.
 CORNERS, CONTROL_POINTS, BISECTION = "corners", "control points", "bisection"
 #: Bisection ends where the bracket is this small a share of the largest value met.
-CLOSE_ENOUGH = 1e-9
+CLOSE_ENOUGH = 1e-10
 #: Below this share a difference is rounding.
 _ROUNDING = 1e-13
 #: Bisection also ends after so many boxes; the gap that is left is stated.

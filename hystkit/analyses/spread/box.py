@@ -10,7 +10,7 @@ from hystkit.base.fields import Field, Viewed
 from hystkit.base.frozen import Named
 from hystkit.circuit.design import Design
 from hystkit.circuit.device import UNITS
-from hystkit.numeric.extremes import toleranced
+from hystkit.numeric.tolerances import toleranced
 from hystkit.numeric.views import Interval
 
 #: Temperature that values and tolerances are stated for [°C].
@@ -69,9 +69,7 @@ class Box(Viewed):
         return {name: (one.low, one.high) for name, one in self.quantities.items()}
 
     def _fields(self) -> Sequence[Field]:
-        return [
-            Field(name, (one.low, one.high), one.unit) for name, one in self.quantities.items()
-        ]
+        return [Field(name, (one.low, one.high), one.unit) for name, one in self.quantities.items()]
 
 
 def uncertain(design: Design, temperature: Interval | None = None) -> Box:

@@ -2,19 +2,136 @@
 
 from __future__ import annotations
 
-from collections.abc import Mapping
+from collections.abc import Mapping, Sequence
+from dataclasses import dataclass
+from functools import cached_property
 from math import hypot
-from typing import Any
+from typing import TYPE_CHECKING, Any
 
 import numpy as np
 from numpy.typing import NDArray
 
+from hystkit.analyses.spread.yields import Window, Yield, yield_of
+from hystkit.base.fields import Field, Viewed
+from hystkit.base.frozen import Named
 from hystkit.circuit.signal import Signal
+from hystkit.numeric.trips import trip_points
 from hystkit.numeric.views import Interval
 
+if TYPE_CHECKING:
+    from hystkit.analyses.spread.result import Spread
+
+Array = NDArray[np.float64]
 _CELLS = 4096
 #: A signal counts as a straight line where it bends by less than this share of its travel.
 _STRAIGHT = 1e-12
+
+
+@dataclass(frozen=True)
+class MeasurandSpread(Viewed):
+    """The spread in the unit of the measured quantity.
+
+    Attributes
+    ----------
+    spread : Spread
+        In volts.
+    signal : Signal
+        Quantity <-> volts, taken as exact.
+    """
+
+    spread: Spread
+    signal: Signal
+
+    @property
+    def unit(self) -> str:
+        """Unit of the quantity."""
+        return self.signal.unit
+
+    @property
+    def low_is(self) -> str:
+        """Which trip point stands at the low end of the quantity: "lower" or "upper"."""
+        return ordered(self.signal)["low"]
+
+    @cached_property
+    def extremes(self) -> Named[Interval]:
+        """Lowest and highest "low", "high" and "width" over the whole box, in `unit`."""
+        ranges = self.spread.extremes
+        found = {
+            end: converted(self.signal, ranges[kind]) for end, kind in ordered(self.signal).items()
+        }
+        nothing = (float("nan"), float("nan"))
+        possible = self.spread.switches
+        width = width_interval(self.signal, ranges) if possible else nothing
+        return Named({**found, "width": width})
+
+    @cached_property
+    def gap(self) -> float:
+        """How far the extremes of the width may lie beyond what is attained, in `unit`."""
+        corners = [
+            corner
+            for bound in self.spread.bounds.values()
+            for corner in (bound.at_lowest, bound.at_highest)
+        ]
+        names = self.spread.box.quantities
+        grid = {name: np.array([corner[name] for corner in corners]) for name in names}
+        trips = trip_points(self.spread.design, **grid)
+        attained = np.abs(self.signal.quantity(trips.upper) - self.signal.quantity(trips.lower))
+        low, high = self.extremes["width"]
+        gap = float(max(high - np.max(attained), np.min(attained) - low))
+        return gap if gap > 1e-12 * high else 0.0
+
+    @cached_property
+    def rss(self) -> Named[float]:
+        """Root sum square of "low", "high" and "width", in `unit`."""
+        nominal: Any = trip_points(self.spread.design)
+        trips = {"upper": float(nominal.upper), "lower": float(nominal.lower)}
+        rss = self.spread.rss
+        found = {
+            end: abs(secant(self.signal, trips[kind], rss[kind])) * rss[kind]
+            for end, kind in ordered(self.signal).items()
+        }
+        width = width_rss(self.signal, trips, rss, self.spread.effects)
+        return Named({**found, "width": width})
+
+    @cached_property
+    def samples(self) -> Named[Array]:
+        """Monte Carlo samples of "low", "high" and "width", each of shape (count,), in `unit`."""
+        found = {
+            end: np.asarray(self.signal.quantity(self.spread.samples[kind]))
+            for end, kind in ordered(self.signal).items()
+        }
+        return Named({**found, "width": found["high"] - found["low"]})
+
+    def yield_within(
+        self,
+        *,
+        low: Window | None = None,
+        high: Window | None = None,
+        width: Window | None = None,
+        confidence: float = 0.95,
+    ) -> Yield:
+        """Give the share of units within all windows at once.
+
+        Parameters
+        ----------
+        low, high, width : pair of float, optional
+            Lowest and highest value allowed, in `unit`; None leaves an end open.
+        confidence : float, default 0.95
+            Of the interval of the yield [1].
+
+        Returns
+        -------
+        Yield
+            As `Spread.yield_within`.
+        """
+        return yield_of(self.samples, {"low": low, "high": high, "width": width}, confidence)
+
+    def _fields(self) -> Sequence[Field]:
+        name = self.signal.name
+        return [
+            Field(f"{name}, {end}", pair, self.unit, f"± {self.rss[end]:.3g} {self.unit} rss")
+            for end, pair in self.extremes.items()
+        ]
 
 
 def ordered(signal: Signal) -> dict[str, str]:

@@ -5,21 +5,21 @@ from __future__ import annotations
 from collections.abc import Sequence
 from dataclasses import dataclass
 from functools import cached_property
-from typing import Any
 
 import numpy as np
 from numpy.typing import NDArray
 
-from hystkit.analyses.spread import linear, measurand
+from hystkit.analyses.spread import linear
 from hystkit.analyses.spread.bounds import Bound, bounds
 from hystkit.analyses.spread.box import Box
+from hystkit.analyses.spread.measurand import MeasurandSpread
 from hystkit.analyses.spread.sampling import Plan, Samples, sampled
 from hystkit.analyses.spread.yields import Window, Yield, yield_of
 from hystkit.base.fields import Field, Viewed
 from hystkit.base.frozen import Named
+from hystkit.base.quantity import show
 from hystkit.circuit.design import Design
-from hystkit.circuit.signal import Signal
-from hystkit.numeric.extremes import KINDS
+from hystkit.numeric.extremes import KINDS, corners
 from hystkit.numeric.status import Status
 from hystkit.numeric.trips import trip_points
 from hystkit.numeric.views import Interval
@@ -77,6 +77,20 @@ class Spread(Viewed):
     def switches(self) -> bool:
         """Whether every combination in the box has an upper trip point above its lower one."""
         return bool(np.isfinite(self.bounds["width"].interval[0]))
+
+    @cached_property
+    def message(self) -> str:
+        """What is wrong, and where, if not every combination in the box switches."""
+        if self.switches:
+            return ""
+        worst = corners(self.design, self.box.intervals).at("width")[0]
+        status = Status(int(trip_points(self.design, **worst).status))
+        problem = "" if status is Status.OK else f": {status.message}"
+        values = ", ".join(
+            f"{name} = {show(value, self.box.quantities[name].unit)}"
+            for name, value in worst.items()
+        )
+        return f"not everywhere within the tolerances{problem} at {values or 'the stated values'}"
 
     @cached_property
     def effects(self) -> dict[str, dict[str, float]]:
@@ -159,14 +173,13 @@ class Spread(Viewed):
 
     @property
     def _title(self) -> str:
-        drift = "no drift" if self.temperature is None else "{:g} to {:g} °C".format(
-            *self.temperature
-        )  # fmt: skip
+        ends = self.temperature
+        drift = "no drift" if ends is None else f"{ends[0]:g} to {ends[1]:g} °C"
         name = self.design.name or self.design.stage.title
         return f"Spread of {name}, {len(self.box.quantities)} uncertain quantities, {drift}"
 
     def _fields(self) -> Sequence[Field]:
-        rows = [] if self.switches else [Field("switches", "not in every corner of the box")]
+        rows = [] if self.switches else [Field("switches", self.message)]
         for kind, bound in self.bounds.items():
             how = bound.proof if not bound.gap else f"{bound.proof}, within {bound.gap:.1g} V"
             rows.append(Field(kind, bound.interval, "V", how, rf"V_{{\mathrm{{{kind}}}}}"))
@@ -179,111 +192,3 @@ class Spread(Viewed):
         rows += [Field(f"{k} per volt of V_CC", self.per_volt[k], "V/V") for k in KINDS[:2]]
         rows += [Field(f"{k} per kelvin", self.per_kelvin[k].worst, "V/K") for k in KINDS[:2]]
         return rows + (list(self.measurand._fields()) if self.measurand else [])
-
-
-@dataclass(frozen=True)
-class MeasurandSpread(Viewed):
-    """The spread in the unit of the measured quantity.
-
-    Attributes
-    ----------
-    spread : Spread
-        In volts.
-    signal : Signal
-        Quantity <-> volts, taken as exact.
-    """
-
-    spread: Spread
-    signal: Signal
-
-    @property
-    def unit(self) -> str:
-        """Unit of the quantity."""
-        return self.signal.unit
-
-    @property
-    def low_is(self) -> str:
-        """Which trip point stands at the low end of the quantity: "lower" or "upper"."""
-        return measurand.ordered(self.signal)["low"]
-
-    @cached_property
-    def extremes(self) -> Named[Interval]:
-        """Lowest and highest "low", "high" and "width" over the whole box, in `unit`."""
-        ranges = self.spread.extremes
-        found = {
-            end: measurand.converted(self.signal, ranges[kind])
-            for end, kind in measurand.ordered(self.signal).items()
-        }
-        nothing = (float("nan"), float("nan"))
-        possible = self.spread.switches
-        width = measurand.width_interval(self.signal, ranges) if possible else nothing
-        return Named({**found, "width": width})
-
-    @cached_property
-    def gap(self) -> float:
-        """How far the extremes of the width may lie beyond what is attained, in `unit`."""
-        corners = [
-            corner
-            for bound in self.spread.bounds.values()
-            for corner in (bound.at_lowest, bound.at_highest)
-        ]
-        names = self.spread.box.quantities
-        grid = {name: np.array([corner[name] for corner in corners]) for name in names}
-        trips = trip_points(self.spread.design, **grid)
-        attained = np.abs(self.signal.quantity(trips.upper) - self.signal.quantity(trips.lower))
-        low, high = self.extremes["width"]
-        gap = float(max(high - np.max(attained), np.min(attained) - low))
-        return gap if gap > 1e-12 * high else 0.0
-
-    @cached_property
-    def rss(self) -> Named[float]:
-        """Root sum square of "low", "high" and "width", in `unit`."""
-        nominal: Any = trip_points(self.spread.design)
-        trips = {"upper": float(nominal.upper), "lower": float(nominal.lower)}
-        rss = self.spread.rss
-        found = {
-            end: abs(measurand.secant(self.signal, trips[kind], rss[kind])) * rss[kind]
-            for end, kind in measurand.ordered(self.signal).items()
-        }
-        width = measurand.width_rss(self.signal, trips, rss, self.spread.effects)
-        return Named({**found, "width": width})
-
-    @cached_property
-    def samples(self) -> Named[Array]:
-        """Monte Carlo samples of "low", "high" and "width", each of shape (count,), in `unit`."""
-        found = {
-            end: np.asarray(self.signal.quantity(self.spread.samples[kind]))
-            for end, kind in measurand.ordered(self.signal).items()
-        }
-        return Named({**found, "width": found["high"] - found["low"]})
-
-    def yield_within(
-        self,
-        *,
-        low: Window | None = None,
-        high: Window | None = None,
-        width: Window | None = None,
-        confidence: float = 0.95,
-    ) -> Yield:
-        """Give the share of units within all windows at once.
-
-        Parameters
-        ----------
-        low, high, width : pair of float, optional
-            Lowest and highest value allowed, in `unit`; None leaves an end open.
-        confidence : float, default 0.95
-            Of the interval of the yield [1].
-
-        Returns
-        -------
-        Yield
-            As `Spread.yield_within`.
-        """
-        return yield_of(self.samples, {"low": low, "high": high, "width": width}, confidence)
-
-    def _fields(self) -> Sequence[Field]:
-        name = self.signal.name
-        return [
-            Field(f"{name}, {end}", pair, self.unit, f"± {self.rss[end]:.3g} {self.unit} rss")
-            for end, pair in self.extremes.items()
-        ]

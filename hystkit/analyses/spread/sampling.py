@@ -154,15 +154,22 @@ def blocks(box: Box, plan: Plan) -> Iterator[tuple[int, dict[str, Array]]]:
 
     tables = [values(quantity, plan) for quantity in box.quantities.values()]
     points = qmc.Sobol(len(tables), scramble=True, seed=np.random.default_rng(plan.seed))
-    steps = np.empty((len(tables), _BLOCK), dtype=np.intp)
-    rows = np.empty((len(tables), _BLOCK))
+    first = np.ascontiguousarray(_steps(points.random(_BLOCK)))
+    steps, rows = first.copy(), np.empty(first.shape)
     for start in range(0, plan.count, _BLOCK):
-        shares = points.random(_BLOCK)
-        shares *= _STEPS
-        np.copyto(steps, shares.T, casting="unsafe")
+        if start:
+            # A Sobol sequence is linear in binary digits: one point tells all of its block.
+            head = _steps(points.random(1))
+            points.fast_forward(_BLOCK - 1)
+            np.bitwise_xor(first, first[:, :1] ^ head, out=steps)
         for table, step, row in zip(tables, steps, rows, strict=True):
             np.take(table, step, out=row, mode="clip")
         yield start, dict(zip(box.quantities, rows, strict=True))
+
+
+def _steps(shares: Array) -> NDArray[np.intp]:
+    """Numbers of the steps that shares in [0, 1) fall into, one row a quantity."""
+    return (shares * _STEPS).astype(np.intp).T
 
 
 def values(quantity: Quantity, plan: Plan) -> Array:

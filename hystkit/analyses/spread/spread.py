@@ -95,7 +95,7 @@ def _faults(
             )
         )
     for name, value, least in (("samples", samples, 1), ("seed", seed, 0)):
-        if not isinstance(value, Integral) or isinstance(value, bool) or value < least:
+        if not _is_whole(value, least):
             faults.append(
                 Fault(
                     f"{name} is not a whole number of at least {least}.",
@@ -105,7 +105,7 @@ def _faults(
             )
     if distribution not in DISTRIBUTIONS:
         faults.append(unknown_name_fault("distribution", str(distribution), DISTRIBUTIONS))
-    if not isinstance(sigmas, Real) or not 0 < sigmas <= 8:
+    if not isinstance(sigmas, Real) or not 0 < float(sigmas) <= 8:
         faults.append(
             Fault(
                 "sigmas is not a number of standard deviations.",
@@ -115,6 +115,10 @@ def _faults(
             )
         )
     return faults
+
+
+def _is_whole(value: Any, least: int) -> bool:
+    return not isinstance(value, bool) and isinstance(value, Integral) and int(value) >= least
 
 
 def _is_range(ends: Any) -> bool:
