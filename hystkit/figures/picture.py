@@ -132,8 +132,8 @@ class Picture(ABC, Generic[T]):
 
         Parameters
         ----------
-        data
-            What the picture shows; never changed.
+        data : object
+            What the picture shows, of the kind that its class names; never changed.
         """
         with lettering():
             key = (self._layout_key(data), self._theme, self._width_px)

@@ -81,9 +81,9 @@ def place(
     walls : sequence of float, optional
         Lines that no label may cross [px].
     gap : float, default 0
-        Least space between two labels [px].
+        Least space between two labels in one piece [px].
     clearance : float, default 0
-        Least space between a label and a wall [px].
+        Least space between a label and a wall; labels across a wall are twice that apart [px].
 
     Returns
     -------

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import math
 from collections.abc import Hashable
 from dataclasses import dataclass
 
@@ -32,6 +33,7 @@ from hystkit.numeric.views import Levels
 
 #: A margin below this share of the supply is marked as small.
 SMALL_MARGIN = 0.02
+_BESIDE = 0.01
 _RAIL_CLEARANCE = 5.0
 _LEVELS = (("output_low", "V_OL"), ("output_high", "V_OH"), ("reference", "V_REF"))
 
@@ -70,6 +72,15 @@ def nearest_margin(levels: Levels) -> Margin | None:
     return Margin(value, pin, limit, value < SMALL_MARGIN * (levels.v_cc - levels.v_ee))
 
 
+def signal_at_pins(levels: Levels) -> bool:
+    """Whether an input pin sees the signal itself, so that the trips must lie in its range."""
+    if levels.pins is None:
+        return False
+    # A source resistance and the bias current put the pin a little beside the signal.
+    slack = _BESIDE * (levels.v_cc - levels.v_ee)
+    return levels.pins[0] <= levels.lower + slack and levels.upper - slack <= levels.pins[1]
+
+
 class RulerPicture(Picture[Levels]):
     """The ruler of a design, from below V_EE to above V_CC.
 
@@ -106,7 +117,7 @@ class RulerPicture(Picture[Levels]):
             self._spans[trip] = moving(box(page, colour, 0.30, SHADE))
             self._stems[trip] = moving(line(page, colour, 2.2, TRACE, gid="trip"))
             self._witnesses[trip] = moving(
-                line(page, colour, 1.1, GUIDE, linestyle=(0, (2, 2)), alpha=0.85)
+                line(page, colour, 1.1, GUIDE, linestyle=(0, (2, 2)), alpha=0.85, gid="witness")
             )
         self._tags = TripTags(page, theme, moving)
         self._width = Dimension(page, theme.band, moving)
@@ -152,11 +163,9 @@ class RulerPicture(Picture[Levels]):
         rows, px = self._rows, self._plan.scale.px
         lower, upper = px(data.lower), px(data.upper)
         stretch(self._band, lower, rows.trip_markers, upper, rows.axis)
-        under = (rows.below, rows.margin + 8)
         for trip, x in (("lower", lower), ("upper", upper)):
             self._stems[trip].set_data([x, x], [rows.axis, rows.trip_markers])
-            self._witnesses[trip].set_data([x, x], under)
-            self._witnesses[trip].set_visible(self._plan.common_mode is not None)
+        self._move_witnesses(data)
         self._tags.move(
             data,
             (lower, upper),
@@ -166,6 +175,19 @@ class RulerPicture(Picture[Levels]):
             walls=self._rail_places(),
         )
         self._move_width(data, lower, upper)
+
+    def _move_witnesses(self, data: Levels) -> None:
+        """Lead the trips down to the input range, or the pins where they do not see the trips."""
+        rows, scale, theme = self._rows, self._plan.scale, self._theme
+        at_trips = signal_at_pins(data)
+        values = (data.lower, data.upper) if at_trips or data.pins is None else data.pins
+        for trip, value in zip(("lower", "upper"), values, strict=True):
+            x = scale.inside(value) if math.isfinite(value) else math.nan
+            self._witnesses[trip].set_data([x, x], (rows.below, rows.margin + 8))
+            self._witnesses[trip].set_color(getattr(theme, trip) if at_trips else theme.text)
+            self._witnesses[trip].set_visible(
+                self._plan.common_mode is not None and data.pins is not None
+            )
 
     def _move_width(self, data: Levels, lower: float, upper: float) -> None:
         rows = self._rows
@@ -295,5 +317,5 @@ def describe(levels: Levels) -> str:
         parts.append(f"common-mode range {written_span(*levels.common_mode)}")
     margin = nearest_margin(levels)
     if margin is not None:
-        parts.append(f"margin of the nearest trip {written(margin.value, digits=3)}")
+        parts.append(f"margin of the input pins {written(margin.value, digits=3)}")
     return "; ".join(parts) + "."

@@ -37,8 +37,10 @@ def levels(lower: float, upper: float, **changes: Any) -> Levels:
     """Levels of a 5 V stage with these trips."""
     values = {"v_ee": 0.0, "v_cc": 5.0, "output_high": 4.9, "output_low": 0.2} | changes
     width, middle = upper - lower, (upper + lower) / 2
-    ends = (*values.get("lower_interval", (lower,)), *values.get("upper_interval", (upper,)))
-    values.setdefault("pins", (min(ends), max(ends)) if upper > lower else None)
+    ends = [*(values.get("lower_interval") or ()), *(values.get("upper_interval") or ())]
+    ends += [lower, upper]
+    # As in an inverting stage, whose signal is wired to a pin.
+    values.setdefault("pins", (min(ends), max(ends)) if upper >= lower else None)
     return Levels(upper=upper, lower=lower, width=width, middle=middle, **values)
 
 
@@ -124,6 +126,9 @@ def random_levels(draw: Any) -> Levels:
     if draw(st.booleans()):
         ends = sorted(draw(st.lists(st.floats(-0.5, 1.5), min_size=2, max_size=2)))
         bare["common_mode"] = (v_ee + ends[0] * swing, v_ee + ends[1] * swing)
+        if draw(st.booleans()):
+            pins = sorted(draw(st.lists(st.floats(0, 1), min_size=2, max_size=2)))
+            bare["pins"] = (v_ee + pins[0] * swing, v_ee + pins[1] * swing)
     if draw(st.booleans()):
         bare |= _sensor(draw, v_ee, swing)
     if draw(st.integers(0, 9)) == 0:

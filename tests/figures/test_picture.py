@@ -131,6 +131,25 @@ def test_a_thousand_updates_leave_nothing_behind(kind: str) -> None:
 
 
 @pytest.mark.parametrize("kind", KINDS)
+def test_a_changing_background_leaves_nothing_behind_either(kind: str) -> None:
+    picture = made(kind, vent())
+    vents, failures = MAKERS[kind][1](vent()), MAKERS[kind][1](failed())
+
+    def census() -> int:
+        gc.collect()
+        return sum(isinstance(thing, Artist) for thing in gc.get_objects())
+
+    picture.png(1)
+    before = census()
+    for _ in range(30):
+        picture.update(failures)
+        picture.png(1)
+        picture.update(vents)
+        picture.png(1)
+    assert census() == before
+
+
+@pytest.mark.parametrize("kind", KINDS)
 def test_moving_trips_do_not_redraw_the_background(kind: str) -> None:
     picture = made(kind, vent())
     for step in range(8):

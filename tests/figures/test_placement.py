@@ -25,7 +25,12 @@ def broken(
     boxes = [(start, start + want.length) for start, want in zip(starts, wants, strict=True)]
     rules = {
         "inside": boxes[0][0] >= ROW[0] - 1e-6 and boxes[-1][1] <= ROW[1] + 1e-6,
-        "apart": all(b[0] - a[1] >= gap - 1e-6 for a, b in pairwise(boxes)),
+        "apart": all(b[0] - a[1] >= min(gap, 2 * clearance) - 1e-6 for a, b in pairwise(boxes)),
+        "apart without a wall between": all(
+            b[0] - a[1] >= gap - 1e-6
+            for a, b in pairwise(boxes)
+            if not any(a[1] - 1e-6 <= wall <= b[0] + 1e-6 for wall in walls)
+        ),
         "off the walls": all(
             end <= wall - clearance + 1e-6 or start >= wall + clearance - 1e-6
             for start, end in boxes
@@ -44,28 +49,25 @@ def test_a_placement_breaks_no_rule(
         assert broken(wants, starts, walls, gap, clearance) == []
 
 
-def cheapest_on_a_grid(wants: list[Want], walls: list[float], gap: float) -> float | None:
+def cheapest_on_a_grid(wants: list[Want], walls: list[int], gap: int) -> float | None:
     """Least sum of squared displacements with whole starts, by dynamic programming."""
-    costs = np.zeros(102)
-    reach = 0.0
-    best: np.ndarray | None = None
+    # Cost of having placed all labels so far, by the place where the last one ends.
+    best = {-1000: 0.0}
     for want in wants:
-        starts = np.arange(0, 101)
-        legal = np.array([
-            start + want.length <= 100
-            and not any(start < wall < start + want.length for wall in walls)
-            for start in starts
-        ])  # fmt: skip
-        own = np.where(legal, (starts - want.start) ** 2, np.inf)
-        if best is not None:
-            before = np.minimum.accumulate(best)
-            latest = np.floor(starts - reach - gap).astype(int)
-            own = own + np.where(latest >= 0, before[np.maximum(latest, 0)], np.inf)
-        best, reach = own, want.length
-    assert costs is not None
-    assert best is not None
-    least = float(best.min())
-    return None if np.isinf(least) else least
+        found: dict[int, float] = {}
+        for start in range(101 - int(want.length)):
+            end = start + int(want.length)
+            if any(start < wall < end for wall in walls):
+                continue
+            legal = [
+                cost
+                for last, cost in best.items()
+                if start >= last + (0 if any(last <= w <= start for w in walls) else gap)
+            ]
+            if legal:
+                found[end] = min(legal) + (start - want.start) ** 2
+        best = found
+    return min(best.values(), default=None)
 
 
 WHOLE_WANTS = st.lists(

@@ -153,6 +153,21 @@ def test_a_margin_that_is_used_up_carries_a_sign_and_not_only_a_colour() -> None
     assert [a.get_visible() for a in crosses] == [True]
 
 
+def test_where_the_pins_do_not_see_the_signal_their_own_voltage_counts() -> None:
+    """A divided 12 V signal: the pins stand at the reference, well inside their range."""
+    found = levels(11.44, 12.65, pins=(2.5, 2.5), common_mode=(0.0, 3.5), reference=2.5)
+    margin = nearest_margin(found)
+    assert margin is not None
+    assert (margin.value, margin.pin, margin.small) == (1.0, 2.5, False)
+    picture = ruler(found)
+    rails = sorted({round(box[0], 3) for box in lines(picture, "rail")})
+    witnesses = [(box[0] - rails[0]) / (rails[1] - rails[0]) for box in lines(picture, "witness")]
+    assert witnesses == pytest.approx([0.5, 0.5], abs=1e-4)
+    at_trips = lines(ruler(levels(1.0, 2.0, common_mode=(0.0, 3.5))), "witness")
+    trips = lines(ruler(levels(1.0, 2.0, common_mode=(0.0, 3.5))), "trip")
+    assert [box[0] for box in at_trips] == pytest.approx([box[0] for box in trips])
+
+
 def test_moving_trips_do_not_redraw_the_background() -> None:
     picture = RulerPicture()
     for shift in np.linspace(0, 0.5, 20):
@@ -197,7 +212,7 @@ def test_alt_tells_all_numbers() -> None:
         "lower trip 2.332 V (28.06 °C) within 2.3 to 2.362 V, "
         "upper trip 2.553 V (24.05 °C) within 2.52 to 2.585 V, width 221 mV; "
         "output 0.2 to 4.9 V; common-mode range 0 to 3.5 V; "
-        "margin of the nearest trip 915 mV."
+        "margin of the input pins 915 mV."
     )
 
 
