@@ -72,7 +72,7 @@ def draw_sheet(sheet: Sheet, axes: Axes, *, colour: str, line_width: float) -> N
         if terminal.kind.startswith("open"):
             left, bottom, right, top = terminal.box
             centre = ((left + right) / 2, (bottom + top) / 2)
-            drawing.add(elements.Dot(radius=CIRCLE).at(centre).fill(None))
+            drawing.add(elements.Dot(radius=CIRCLE).at(centre).fill(False))
     for point in sheet.dots:
         drawing.add(elements.Dot(radius=DOT).at(point))
     drawing.draw(canvas=axes, show=False)
@@ -123,7 +123,6 @@ def _terminal(terminal: Terminal) -> list[tuple[Point, ...]]:
     if terminal.kind == "ground":
         widths = (BAR, BAR * 0.62, BAR * 0.24)
         rows = (y - 0.02, y - GROUND / 2, y - GROUND)
-        return [((x, y), (x, rows[0]))] + [
-            ((x - w, row), (x + w, row)) for w, row in zip(widths, rows, strict=True)
-        ]
+        bars = (((x - w, row), (x + w, row)) for w, row in zip(widths, rows, strict=True))
+        return [((x, y), (x, rows[0])), *bars]
     return []

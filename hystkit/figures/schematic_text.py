@@ -201,8 +201,9 @@ def obstacles(sheet: Sheet) -> tuple[Box, ...]:
     for body in sheet.bodies:
         (x0, y0), (x1, y1) = sorted((body.start, body.end))
         lines.append((x0, y0, x1, y1))
-    marks = (*sheet.bodies, *sheet.terminals, sheet.comparator)
-    return (*lines, *(mark.box for mark in marks))
+    bodies = (body.box for body in sheet.bodies)
+    terminals = (terminal.box for terminal in sheet.terminals)
+    return (*lines, *bodies, *terminals, sheet.comparator.box)
 
 
 def is_crowded(fit: Fit) -> bool:
