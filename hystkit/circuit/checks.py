@@ -68,17 +68,16 @@ def infer_sense(elements: Iterable[Element]) -> str | None:
     return "non-inverting" if at_plus else "inverting"
 
 
-def _signal_at_inputs(net: Netlist) -> tuple[bool, bool]:
-    """Whether the signal reaches plus, and minus, by a way around the other one and the output.
+def _signal_at_inputs(net: Netlist, *around: str) -> tuple[bool, bool]:
+    """Whether the signal reaches plus, and minus, by a way around the other one and `around`.
 
-    Behind another input the signal can only be weaker than at that input, and an ideal output
-    holds its voltage.
+    Behind the other input the signal can only be weaker than at that input.
     """
     plus, minus = (net.merged[pin] for pin in INPUT_NODES)
     held = FIXED_NODES.keys() - {"signal"}
     return (
-        plus in net.reach("signal", minus, OUTPUT_NODE) - held,
-        minus in net.reach("signal", plus, OUTPUT_NODE) - held,
+        plus in net.reach("signal", minus, *around) - held,
+        minus in net.reach("signal", plus, *around) - held,
     )
 
 
@@ -168,7 +167,8 @@ def _path_faults(net: Netlist) -> Iterator[Fault]:
             rule="a resistor path leads from out to plus",
             remedy='add a feedback resistor such as Resistor("R_F", "out", "plus")',
         )
-    if not any(_signal_at_inputs(net)):
+    # An ideal output holds its voltage, so that the signal does not pass through it.
+    if not any(_signal_at_inputs(net, OUTPUT_NODE)):
         past = " except through the output" if net.free & {plus} & net.reach("signal") else ""
         yield Fault(
             "the signal does not reach the inputs.",

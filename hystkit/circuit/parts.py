@@ -42,7 +42,8 @@ class Part:
         set_frozen(self, "value", collect(faults, lambda: _read_any(value)))
         set_frozen(self, "tol", collect(faults, lambda: parse_percent(tol)))
         set_frozen(self, "tempco", collect(faults, lambda: read(tempco, name="tempco")))
-        if not faults and not 0 <= self.tol < 1:
+        # What could not be read is NaN here, and a fault already.
+        if self.tol < 0 or self.tol >= 1:
             faults.append(
                 Fault(
                     "the tolerance of a part is outside its range.",
@@ -99,7 +100,8 @@ class Supply:
         low = None if v_ee is None else collect(faults, lambda: read(v_ee, unit="V", name="V_EE"))
         set_frozen(self, "v_ee", low)
         set_frozen(self, "tol", collect(faults, lambda: parse_percent(tol)))
-        if not faults and not 0 <= self.tol < 1:
+        # What could not be read is NaN here, and a fault already.
+        if self.tol < 0 or self.tol >= 1:
             faults.append(
                 Fault(
                     "the supply tolerance is outside its range.",
@@ -108,7 +110,7 @@ class Supply:
                     remedy='a fraction such as 0.05, or the text "5 %"',
                 )
             )
-        if not faults and not self.v_cc > self.low_rail:
+        if self.v_cc <= self.low_rail:
             faults.append(
                 Fault(
                     "the supply rails are the wrong way round.",

@@ -6,12 +6,14 @@ import json
 import os
 from collections.abc import Mapping
 from dataclasses import asdict, fields
+from functools import partial
 from pathlib import Path
 from typing import Any
 
 from hystkit.base.errors import Fault, HystkitError, OutputExistsError, RecordError
 from hystkit.base.nearest import unknown_name_fault
 from hystkit.circuit.design import Design
+from hystkit.circuit.design_checks import read_parts
 from hystkit.circuit.device import Device
 from hystkit.circuit.elements import Element, Resistor, Wire
 from hystkit.circuit.parts import Part, Supply
@@ -20,6 +22,8 @@ from hystkit.circuit.stage import Stage
 
 FORMAT = "hystkit design"
 VERSION = 1
+#: Media type of a record, in the output of a panel.
+MIME = "application/vnd.hystkit.design+json"
 
 _SIGNALS: dict[str, type[Linear]] = {"linear": Linear}
 _KEYS = ("format", "version", "name", "stage", "parts", "supply", "device", "levels", "signal")
@@ -212,16 +216,17 @@ def _element(entry: list[str]) -> Element:
     return Wire(*entry) if len(entry) == 2 else Resistor(*entry)
 
 
-def _parts(record: dict[str, Any] | None) -> dict[str, Part]:
+def _parts(record: dict[str, Any] | None, unit: str) -> dict[str, Part | None]:
     faults: list[Fault] = []
-    parts = {}
+    given = {}
     for name, entry in (record or {}).items():
         try:
-            parts[name] = Part(**entry) if isinstance(entry, Mapping) else Part(entry)
+            given[name] = Part(**entry) if isinstance(entry, Mapping) else entry
         except HystkitError as error:
             faults += [_prefixed(name, fault) for fault in error.faults]
         except TypeError as error:
             faults.append(_shapeless(name, error))
+    parts = read_parts(given, unit, faults)
     if faults:
         raise RecordError.of("these parts", faults)
     return parts
@@ -252,10 +257,10 @@ def _signal(record: dict[str, Any] | None) -> Signal | None:
 _BUILDERS: dict[str, Any] = {
     "name": lambda value: "" if value is None else _texts({"name": value}, "name")["name"],
     "stage": _stage,
-    "parts": _parts,
+    "parts": partial(_parts, unit="Ω"),
     "supply": lambda value: Supply(**value) if isinstance(value, Mapping) else Supply(value),
     "device": _device,
-    "levels": _parts,
+    "levels": partial(_parts, unit="V"),
     "signal": _signal,
 }
 
