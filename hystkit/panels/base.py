@@ -13,6 +13,7 @@ from traitlets import Instance, Unicode, observe
 
 from hystkit.base.errors import DesignError
 from hystkit.circuit.design import Design
+from hystkit.circuit.record import MIME, to_record
 from hystkit.panels.desk import Changes, Desk
 from hystkit.panels.page import page_setup
 from hystkit.panels.revise import revised
@@ -155,6 +156,7 @@ class Panel(widgets.VBox):
         with self._desk.guarded("writing a plain output"):
             still = self.snapshot()
             bundle |= {"text/plain": still.to_text(), "text/html": still.to_html()}
+            bundle[MIME] = to_record(self.design)
         return bundle
 
     # -- how it is done ---------------------------------------------------------------------
