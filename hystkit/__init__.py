@@ -45,10 +45,19 @@ _HOME = {
     "loop": "numeric.loop:loop",
     "response": "numeric.response:response",
     "sweep": "numeric.response:sweep",
+    # what follows from them
+    "size": "analyses.sizing.size:size",
+    "Limits": "analyses.sizing.limits:Limits",
+    "Sizing": "analyses.sizing.candidate:Sizing",
+    "Candidate": "analyses.sizing.candidate:Candidate",
+    "spread": "analyses.spread.spread:spread",
+    "Spread": "analyses.spread.result:Spread",
     # what a person sees
     "figures": "figures",
     "panels": "panels",
     "export": "export",
+    "write_page": "export.page.writer:write_page",
+    "page_fragment": "export.page.writer:page_fragment",
     # errors
     "HystkitError": "base.errors:HystkitError",
     "InputError": "base.errors:InputError",
@@ -69,6 +78,12 @@ if TYPE_CHECKING:
     from hystkit import export as export
     from hystkit import figures as figures
     from hystkit import panels as panels
+    from hystkit.analyses.sizing.candidate import Candidate as Candidate
+    from hystkit.analyses.sizing.candidate import Sizing as Sizing
+    from hystkit.analyses.sizing.limits import Limits as Limits
+    from hystkit.analyses.sizing.size import size as size
+    from hystkit.analyses.spread.result import Spread as Spread
+    from hystkit.analyses.spread.spread import spread as spread
     from hystkit.base.errors import DesignError as DesignError
     from hystkit.base.errors import HystkitError as HystkitError
     from hystkit.base.errors import InfeasibleError as InfeasibleError
@@ -81,14 +96,16 @@ if TYPE_CHECKING:
     from hystkit.base.errors import UnknownNameError as UnknownNameError
     from hystkit.circuit import signal
     from hystkit.circuit.design import Design as Design
+    from hystkit.circuit.device import Device as Device
     from hystkit.circuit.elements import Resistor as Resistor
     from hystkit.circuit.elements import Wire as Wire
-    from hystkit.circuit.device import Device as Device
     from hystkit.circuit.parts import Part as Part
     from hystkit.circuit.parts import Supply as Supply
     from hystkit.circuit.record import load as load
     from hystkit.circuit.record import save as save
     from hystkit.circuit.stage import Stage as Stage
+    from hystkit.export.page.writer import page_fragment as page_fragment
+    from hystkit.export.page.writer import write_page as write_page
     from hystkit.numeric.levels import levels as levels
     from hystkit.numeric.loop import loop as loop
     from hystkit.numeric.response import response as response

@@ -127,6 +127,33 @@ def expand(expression: sp.Expr, definitions: Iterable[Definition]) -> sp.Expr:
     return expression.xreplace(known)
 
 
+def needed(
+    expressions: Iterable[sp.Expr], definitions: Iterable[Definition]
+) -> tuple[tuple[Definition, ...], frozenset[sp.Symbol]]:
+    """Tell what expressions are evaluated from.
+
+    Parameters
+    ----------
+    expressions : iterable of sympy.Expr
+        In symbols of the circuit and of the definitions.
+    definitions : iterable of Definition
+        In the order of evaluation.
+
+    Returns
+    -------
+    tuple
+        The definitions that act on the expressions, in the order of evaluation, and the symbols
+        of the circuit that act on them.
+    """
+    used: set[sp.Symbol] = set().union(*(e.free_symbols for e in expressions))
+    acting = []
+    for row in reversed(tuple(definitions)):
+        if row.symbol in used:
+            used = (used - {row.symbol}) | row.expression.free_symbols
+            acting.append(row)
+    return tuple(reversed(acting)), frozenset(used)
+
+
 def restrict(
     definitions: Iterable[Definition], zeros: Iterable[sp.Symbol]
 ) -> tuple[tuple[Definition, ...], dict[sp.Expr, sp.Expr]]:

@@ -23,8 +23,8 @@ SECTIONS = (
 
 # What may stand in brackets as a unit. [1] is a plain number or ratio.
 UNITS = {
-    "1", "%", "V", "mV", "A", "mA", "µA", "Ω", "ohm", "kΩ", "S", "F", "s", "ms", "h", "Hz",
-    "1/s", "1/h", "K", "°C", "1/K", "ppm/K", "W", "V/s", "V/K", "V/V", "V/Ω", "V/unit",
+    "1", "%", "V", "mV", "A", "mA", "µA", "Ω", "kΩ", "Ohm", "kOhm", "S", "F", "s", "ms", "h", "Hz",
+    "1/s", "1/h", "K", "°C", "1/K", "ppm/K", "W", "V/s", "V/K", "V/V", "V/Ω", "V/Ohm", "V/unit",
     "unit", "unit/s", "unit/V", "px", "in", "dpi", "m", "bytes", "B",
 }  # fmt: skip
 
@@ -71,8 +71,9 @@ def accepted(function: Callable[..., Any]) -> list[str]:
 
 
 def bracketed(doc: str) -> list[str]:
-    """What stands in square brackets and reads as a unit: text before the first Examples."""
+    """Units in square brackets, examples and code left out; "[V or A]" holds two."""
     prose = re.split(r"^(?:Examples|References)\n-{3,}\n", doc, flags=re.MULTILINE)[0]
     prose = re.sub(r"``.*?``|`[^`]*`|:math:`[^`]*`", "", prose, flags=re.DOTALL)
     prose = re.sub(r"^\.\. math::.*?(?=\n\S|\Z)", "", prose, flags=re.DOTALL | re.MULTILINE)
-    return re.findall(r"(?<=[\s(])\[([^\[\]\n]{1,12})\]", prose)
+    found = re.findall(r"(?<=[\s(])\[([^\[\]\n]{1,12})\]", prose)
+    return [unit for one in found for unit in re.split(r" or | per ", one)]

@@ -4,7 +4,7 @@ from __future__ import annotations
 
 import importlib
 import inspect
-from collections.abc import Callable, Iterator
+from collections.abc import Callable, Iterator, Sequence
 from types import ModuleType
 from typing import Any
 
@@ -78,7 +78,12 @@ def documents() -> list[tuple[str, str]]:
     return [(label, inspect.cleandoc(doc)) for label, doc in found]
 
 
-@pytest.mark.parametrize(("name", "function"), functions(), ids=lambda value: str(value)[:60])
+def labelled(cases: Sequence[tuple[str, Any]]) -> list[Any]:
+    """Test cases that are called by their first value."""
+    return [pytest.param(*case, id=case[0]) for case in cases]
+
+
+@pytest.mark.parametrize(("name", "function"), labelled(functions()))
 def test_parameters_match_the_signature(name: str, function: Callable[..., Any]) -> None:
     doc = inspect.getdoc(function) or ""
     assert doc, f"{name} has no docstring"
@@ -87,7 +92,7 @@ def test_parameters_match_the_signature(name: str, function: Callable[..., Any])
         assert documented(doc) == names
 
 
-@pytest.mark.parametrize(("name", "owner"), classes(), ids=lambda value: str(value)[:60])
+@pytest.mark.parametrize(("name", "owner"), labelled(classes()))
 def test_class_documents_what_it_is_made_from(name: str, owner: type) -> None:
     doc = inspect.getdoc(owner) or ""
     assert doc, f"{name} has no docstring"
@@ -100,7 +105,7 @@ def test_class_documents_what_it_is_made_from(name: str, owner: type) -> None:
     assert [made_from for made_from in accepted(owner) if made_from not in said] == []
 
 
-@pytest.mark.parametrize(("name", "function"), functions(), ids=lambda value: str(value)[:60])
+@pytest.mark.parametrize(("name", "function"), labelled(functions()))
 def test_documented_parameters_have_a_kind_and_a_meaning(
     name: str, function: Callable[..., Any]
 ) -> None:
@@ -109,7 +114,7 @@ def test_documented_parameters_have_a_kind_and_a_meaning(
     assert [entry.names for entry in listed if not entry.kind or not entry.text] == []
 
 
-@pytest.mark.parametrize(("label", "doc"), documents(), ids=lambda value: str(value)[:60])
+@pytest.mark.parametrize(("label", "doc"), labelled(documents()))
 def test_sections_and_units_are_known(label: str, doc: str) -> None:
     for title, line in underlined(doc):
         assert title in SECTIONS, f"{label}: section {title!r}"

@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import os
 import stat
+from pathlib import PurePosixPath
 
 import pytest
 
@@ -42,8 +43,10 @@ def test_no_large_files(files: tuple[str, ...]) -> None:
 
 
 def test_every_folder_of_the_package_is_a_package(files: tuple[str, ...]) -> None:
-    folders = {name.rpartition("/")[0] for name in files if name.startswith("hystkit/")}
-    assert [folder for folder in folders if f"{folder}/__init__.py" not in files] == []
+    code = [name for name in files if name.startswith("hystkit/") and name.endswith(".py")]
+    folders = {folder for name in code for folder in PurePosixPath(name).parents}
+    needed = {str(folder / "__init__.py") for folder in folders if folder.parts}
+    assert needed - set(files) == set()
     assert "hystkit/py.typed" in files
 
 

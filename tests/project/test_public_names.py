@@ -11,6 +11,7 @@ import hystkit as hk
 from tests.project.source import PACKAGE
 
 PUBLIC = [
+    "Candidate",
     "DesignError",
     "Design",
     "Device",
@@ -18,12 +19,15 @@ PUBLIC = [
     "InfeasibleError",
     "InfeasibleWidthError",
     "InputError",
+    "Limits",
     "OutputExistsError",
     "Part",
     "QuantityError",
     "RecordError",
     "Resistor",
     "SignalError",
+    "Sizing",
+    "Spread",
     "Stage",
     "Supply",
     "SwitchingLaw",
@@ -37,12 +41,16 @@ PUBLIC = [
     "levels",
     "load",
     "loop",
+    "page_fragment",
     "panels",
     "response",
     "save",
     "signals",
+    "size",
+    "spread",
     "sweep",
     "trip_points",
+    "write_page",
 ]
 
 
