@@ -33,7 +33,7 @@ _HOME = {
     "Supply": "circuit.parts:Supply",
     "Device": "circuit.device:Device",
     "Design": "circuit.design:Design",
-    "signals": "circuit.signal",
+    "signals": "circuit.signals",
     "save": "circuit.record:save",
     "load": "circuit.record:load",
     # formulas and numbers
@@ -94,7 +94,7 @@ if TYPE_CHECKING:
     from hystkit.base.errors import RecordError as RecordError
     from hystkit.base.errors import SignalError as SignalError
     from hystkit.base.errors import UnknownNameError as UnknownNameError
-    from hystkit.circuit import signal
+    from hystkit.circuit import signals as signals
     from hystkit.circuit.design import Design as Design
     from hystkit.circuit.device import Device as Device
     from hystkit.circuit.elements import Resistor as Resistor
@@ -115,7 +115,6 @@ if TYPE_CHECKING:
     from hystkit.symbolic.law import SwitchingLaw as SwitchingLaw
     from hystkit.symbolic.law import derive as derive
 
-    signals = signal
 else:
 
     def __getattr__(name: str) -> object:

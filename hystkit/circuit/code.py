@@ -3,17 +3,19 @@
 from __future__ import annotations
 
 from collections.abc import Mapping
-from dataclasses import fields
+from dataclasses import fields, is_dataclass
 from typing import TYPE_CHECKING, Any
 
 from hystkit.base.errors import QuantityError
 from hystkit.base.quantity import code, read
 from hystkit.circuit.elements import Element, Resistor
+from hystkit.circuit.parts import Part
+from hystkit.circuit.signals.kinds import stated
 
 if TYPE_CHECKING:
     from hystkit.circuit.design import Design
     from hystkit.circuit.device import Device
-    from hystkit.circuit.parts import Part, Supply
+    from hystkit.circuit.parts import Supply
     from hystkit.circuit.stage import Stage
 
 
@@ -105,6 +107,11 @@ def _plain(value: Any) -> Any:
     return dict(value) if isinstance(value, Mapping) else value
 
 
-def _signal_code(signal: Any) -> str:
-    given = ", ".join(f"{f.name}={getattr(signal, f.name)!r}" for f in fields(signal))
-    return f"hk.signals.{type(signal).__name__}({given})"
+def _signal_code(value: Any) -> str:
+    """Write a signal, a sensor or one of their fields."""
+    if isinstance(value, Part):
+        return f"hk.{value!r}"
+    if not is_dataclass(value):
+        return repr(value)
+    given = ", ".join(f"{name}={_signal_code(v)}" for name, v in stated(value).items())
+    return f"hk.signals.{type(value).__name__}({given})"

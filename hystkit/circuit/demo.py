@@ -5,7 +5,7 @@ from __future__ import annotations
 from hystkit.circuit.design import Design
 from hystkit.circuit.device import Device
 from hystkit.circuit.parts import Part, Supply
-from hystkit.circuit.signal import Linear
+from hystkit.circuit.signals import Linear
 from hystkit.circuit.stage import Stage
 
 

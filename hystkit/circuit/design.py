@@ -18,7 +18,7 @@ from hystkit.circuit.device import Device
 from hystkit.circuit.elements import Element
 from hystkit.circuit.parts import Part, Supply
 from hystkit.circuit.reading import Quantity, collect
-from hystkit.circuit.signal import Signal
+from hystkit.circuit.signals import Signal
 from hystkit.circuit.stage import Stage
 
 PartLike = Part | Quantity
@@ -43,7 +43,7 @@ class Design:
         V_REF (required with a reference source), V_PU (V_CC unless given), V_L (0 V unless
         given) [V]. V_OH and V_OL may be given too and then win over the device's drops.
     signal : Signal, optional
-        Quantity <-> volts, such as `signals.Linear`.
+        Quantity <-> volts, such as `signals.Linear`; a ratiometric one takes V_CC from `supply`.
     name : str, default ""
         What to call the design in reports.
 
@@ -90,7 +90,9 @@ class Design:
         if faults:
             raise DesignError.of("this design", faults)
         ordered = {name: resistors[name] for name in stage.parts}
-        filled = (stage, Named(ordered), rails, device, Named(voltages), signal, name)
+        # A ratiometric signal is a share of this design's supply, whatever it was given with.
+        sensed = signal.at(rails.v_cc) if signal is not None and rails is not None else signal
+        filled = (stage, Named(ordered), rails, device, Named(voltages), sensed, name)
         for field, value in zip(fields(self), filled, strict=True):
             object.__setattr__(self, field.name, value)
 

@@ -17,7 +17,8 @@ from hystkit.circuit.design_checks import read_parts
 from hystkit.circuit.device import Device
 from hystkit.circuit.elements import Element, Resistor, Wire
 from hystkit.circuit.parts import Part, Supply
-from hystkit.circuit.signal import Linear, Signal
+from hystkit.circuit.signals import Signal
+from hystkit.circuit.signals.kinds import SIGNALS, built, kind_of, plain
 from hystkit.circuit.stage import Stage
 
 FORMAT = "hystkit design"
@@ -25,7 +26,6 @@ VERSION = 1
 #: Media type of a record, in the output of a panel.
 MIME = "application/vnd.hystkit.design+json"
 
-_SIGNALS: dict[str, type[Linear]] = {"linear": Linear}
 _KEYS = ("format", "version", "name", "stage", "parts", "supply", "device", "levels", "signal")
 
 
@@ -120,12 +120,11 @@ def to_record(design: Design) -> dict[str, Any]:
         The record, keys in reading order.
     """
     signal = design.signal
-    kind = next((k for k, cls in _SIGNALS.items() if type(signal) is cls), None)
-    if signal is not None and kind is None:
+    if signal is not None and kind_of(signal) not in SIGNALS:
         raise RecordError(
             "this signal description cannot be saved.",
             asked=f"save a {type(signal).__name__}",
-            rule=f"saved signals are {', '.join(_SIGNALS)}",
+            rule=f"saved signals are {', '.join(SIGNALS)}",
             remedy="design.with_signal(None), or one of these",
         )
     return {
@@ -137,7 +136,7 @@ def to_record(design: Design) -> dict[str, Any]:
         "supply": asdict(design.supply),
         "device": {**vars(design.device), "limits": dict(design.device.limits)},
         "levels": {name: asdict(part) for name, part in design.levels.items()},
-        "signal": None if signal is None else {"kind": kind, **vars(signal)},
+        "signal": None if signal is None else plain(signal),
     }
 
 
@@ -245,13 +244,13 @@ def _device(record: dict[str, Any] | None) -> Device:
 def _signal(record: dict[str, Any] | None) -> Signal | None:
     if record is None:
         return None
-    values = _texts(dict(record), "unit", "name")
-    kind = values.pop("kind", None)
-    if kind not in _SIGNALS:
+    kind = record.get("kind")
+    if kind not in SIGNALS:
         raise RecordError.of(
-            "this signal", [unknown_name_fault("signal kind", str(kind), list(_SIGNALS))]
+            "this signal", [unknown_name_fault("signal kind", str(kind), list(SIGNALS))]
         )
-    return _SIGNALS[kind](**values)
+    signal: Signal = built(_texts(dict(record), "unit", "name"))
+    return signal
 
 
 _BUILDERS: dict[str, Any] = {

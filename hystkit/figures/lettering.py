@@ -10,7 +10,7 @@ import numpy as np
 from matplotlib.backends.backend_agg import RendererAgg
 
 from hystkit.base.quantity import show
-from hystkit.circuit.signal import Signal
+from hystkit.circuit.signals import Signal
 from hystkit.figures.theme import PX_PER_INCH, LetterSize, letters
 
 MINUS = "−"

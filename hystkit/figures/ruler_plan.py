@@ -7,7 +7,7 @@ from dataclasses import dataclass
 
 import numpy as np
 
-from hystkit.circuit.signal import Signal
+from hystkit.circuit.signals import Signal
 from hystkit.figures.graduation import (
     Scale,
     number,

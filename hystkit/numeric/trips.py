@@ -16,7 +16,7 @@ from hystkit.base.quantity import read
 from hystkit.circuit.design import Design, law_values
 from hystkit.circuit.device import LAW_FIELDS, UNITS
 from hystkit.circuit.reading import collect
-from hystkit.circuit.signal import Signal
+from hystkit.circuit.signals import Signal
 from hystkit.circuit.stage import Stage
 from hystkit.numeric.compile import kernel
 from hystkit.numeric.status import Status, status_of
@@ -64,6 +64,8 @@ class TripPoints(Viewed):
         A `Status` code for each element, 0 where the stage switches.
     signal : Signal or None
         Quantity <-> volts.
+    v_cc : float or ndarray
+        Supply that each element was evaluated at, for ratiometric signals [V].
     """
 
     upper: Any
@@ -72,6 +74,7 @@ class TripPoints(Viewed):
     middle: Any
     status: Any
     signal: Signal | None = None
+    v_cc: Any = None
 
     @property
     def ok(self) -> Any:
@@ -83,7 +86,8 @@ class TripPoints(Viewed):
         """The same in the signal's own unit, ordered; None without a signal."""
         if self.signal is None:
             return None
-        lower, upper = self.signal.quantity(self.lower), self.signal.quantity(self.upper)
+        supply = {"V_CC": self.v_cc} if self.signal.ratiometric and self.v_cc is not None else {}
+        lower, upper = (self.signal.quantity(trip, **supply) for trip in (self.lower, self.upper))
         falling = self.signal.decreasing
         low, high = (upper, lower) if falling else (lower, upper)
         low_is = "upper" if falling else "lower"
@@ -150,9 +154,10 @@ def trip_points(design: Design, **overrides: ArrayLike | str) -> TripPoints:
         upper, lower = kernel(design.stage).trips(values)
         against = design.stage.is_custom and _against_sense(design.stage, values)
         status = status_of(values, design.stage.parts, upper, lower, against)
-    keep = status == Status.OK
-    upper, lower = (np.where(keep, trip, np.nan)[()] for trip in (upper, lower))
-    return TripPoints(upper, lower, upper - lower, (upper + lower) / 2, status[()], design.signal)
+        keep = status == Status.OK
+        upper, lower = (np.where(keep, trip, np.nan)[()] for trip in (upper, lower))
+        width, middle = upper - lower, (upper + lower) / 2
+    return TripPoints(upper, lower, width, middle, status[()], design.signal, values["V_CC"])
 
 
 def overridden(design: Design, overrides: dict[str, Any]) -> dict[str, Any]:

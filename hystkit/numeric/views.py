@@ -9,7 +9,7 @@ if TYPE_CHECKING:
     import numpy as np
     from numpy.typing import NDArray
 
-    from hystkit.circuit.signal import Signal
+    from hystkit.circuit.signals import Signal
 
 Interval = tuple[float, float]
 

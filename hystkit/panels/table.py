@@ -6,7 +6,7 @@ import html
 from collections.abc import Iterator
 
 from hystkit.base.quantity import show
-from hystkit.circuit.signal import Signal
+from hystkit.circuit.signals import Signal
 from hystkit.numeric.trips import TripPoints
 from hystkit.numeric.views import Interval, Levels
 

@@ -8,7 +8,7 @@ from typing import Any
 import numpy as np
 from hypothesis import strategies as st
 
-from hystkit.circuit.signal import Linear
+from hystkit.circuit.signals import Linear
 from hystkit.numeric.views import Levels, Loop, Response
 
 NAN = float("nan")

@@ -18,7 +18,7 @@ from hystkit.circuit.design import Design
 from hystkit.circuit.elements import FIXED_NODES, Element, Resistor, Wire
 from hystkit.circuit.netlist import netlist
 from hystkit.circuit.parts import Supply
-from hystkit.circuit.signal import Linear
+from hystkit.circuit.signals import Linear
 from hystkit.circuit.stage import Stage
 from hystkit.figures.schematic import SchematicPicture, schematic, value_texts
 from hystkit.figures.schematic_custom import routed_sheet

@@ -2,14 +2,16 @@
 
 from __future__ import annotations
 
-import math
 from abc import ABC, abstractmethod
 from collections.abc import Mapping
-from dataclasses import replace
+from dataclasses import fields, replace
+from functools import partial
 from typing import Any, NamedTuple, Self
 
 from hystkit.base.errors import Fault, SignalError
 from hystkit.base.nearest import unknown_name_fault
+from hystkit.base.quantity import read
+from hystkit.circuit.reading import collect, members
 
 
 class Limits(NamedTuple):
@@ -172,26 +174,44 @@ class Signal(ABC):
         return filled
 
 
-def span_faults(span: tuple[float, ...]) -> list[Fault]:
-    """Find what is wrong with a span.
+def read_span(faults: list[Fault], span: object) -> tuple[float, ...]:
+    """Read the span of a signal.
 
     Parameters
     ----------
-    span : tuple of float
-        As given.
+    faults : list of Fault
+        Where what is wrong with it is added.
+    span : object
+        As given: two numbers or texts, the lower one first.
 
     Returns
     -------
-    list of Fault
-        Empty for two finite numbers, the lower one first.
+    tuple of float
+        Both ends; NaN for what could not be read.
     """
-    if len(span) == 2 and all(map(math.isfinite, span)) and span[0] < span[1]:
-        return []
-    return [
-        Fault(
-            "the span of a signal is not an interval.",
-            asked=f"span = {span!r}",
-            rule="two numbers, the lower one first",
-            remedy="the range that occurs in service, such as (0, 2)",
+    ends = tuple(collect(faults, partial(read, end, name="span")) for end in members(span))
+    # What could not be read is NaN here, and a fault already.
+    if len(ends) != 2 or ends[0] >= ends[1]:
+        faults.append(
+            Fault(
+                "the span of a signal is not an interval.",
+                asked=f"span = {span!r}",
+                rule="two numbers, the lower one first",
+                remedy="the range that occurs in service, such as (0, 2)",
+            )
         )
-    ]
+    return ends
+
+
+def fill(target: Any, given: tuple[Any, ...]) -> None:
+    """Set all fields of a frozen dataclass while it is built.
+
+    Parameters
+    ----------
+    target : dataclass
+        Under construction.
+    given : tuple
+        Values of its fields, in their order.
+    """
+    for field, value in zip(fields(target), given, strict=True):
+        object.__setattr__(target, field.name, value)

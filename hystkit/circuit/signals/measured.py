@@ -12,9 +12,8 @@ import numpy as np
 from hystkit.base.errors import Fault, SignalError
 from hystkit.base.quantity import read
 from hystkit.circuit.reading import Quantity
-from hystkit.circuit.signals.base import Limits, Signal, span_faults
+from hystkit.circuit.signals.base import Limits, Signal, fill, read_span
 from hystkit.circuit.signals.inverse import inverse
-from hystkit.circuit.signals.simple import fill
 
 
 @dataclass(frozen=True)
@@ -131,8 +130,9 @@ class Function(Signal):
         unit: str = "",
         name: str = "signal",
     ) -> None:
-        ends = tuple(map(float, span))
-        faults = span_faults(ends) or _function_faults(to_volts, to_quantity, ends)
+        faults: list[Fault] = []
+        ends = read_span(faults, span)
+        faults = faults or _function_faults(to_volts, to_quantity, ends)
         if faults:
             raise SignalError.of("this signal", faults)
         fill(self, (to_volts, to_quantity, ends, unit, name))

@@ -7,11 +7,11 @@ from collections.abc import Mapping, Sequence
 from dataclasses import dataclass
 from typing import Any
 
-from hystkit.base.errors import Fault, QuantityError, SignalError
+from hystkit.base.errors import Fault, SignalError
 from hystkit.base.quantity import parse_percent, read
 from hystkit.circuit.parts import Part
-from hystkit.circuit.reading import Quantity
-from hystkit.circuit.signals.base import Limits, Signal, span_faults
+from hystkit.circuit.reading import Quantity, collect
+from hystkit.circuit.signals.base import Limits, Signal, fill, read_span
 
 
 @dataclass(frozen=True)
@@ -70,14 +70,12 @@ class Linear(Signal):
         slope_tol: Quantity = 0.0,
         zero_error: Quantity = 0.0,
     ) -> None:
-        try:
-            slope = read(per_unit, name="per_unit")
-            offset = read(at_zero, unit="V", name="at_zero")
-            ends = tuple(read(end, name="span") for end in span)
-            errors = parse_percent(slope_tol), abs(read(zero_error, unit="V", name="zero_error"))
-        except QuantityError as error:
-            raise SignalError.of("this signal", error.faults) from None
-        faults = span_faults(ends)
+        faults: list[Fault] = []
+        slope = collect(faults, lambda: read(per_unit, name="per_unit"))
+        offset = collect(faults, lambda: read(at_zero, unit="V", name="at_zero"))
+        ends = read_span(faults, span)
+        error = collect(faults, lambda: read(zero_error, unit="V", name="zero_error"))
+        share = collect(faults, lambda: parse_percent(slope_tol))
         if slope == 0:
             faults.append(
                 Fault(
@@ -89,7 +87,7 @@ class Linear(Signal):
             )
         if faults:
             raise SignalError.of("this signal", faults)
-        fill(self, (slope, offset, ends, unit, name, *errors))
+        fill(self, (slope, offset, ends, unit, name, share, abs(error)))
 
     @property
     def parameters(self) -> dict[str, Limits]:
@@ -154,8 +152,9 @@ class CurrentLoop(Signal):
         loop_limit: Quantity | None = None,
     ) -> None:
         resistor = burden if isinstance(burden, Part) else Part(burden)
-        ends = tuple(map(float, span))
-        faults = span_faults(ends) + _positive("burden", resistor.value)
+        faults: list[Fault] = []
+        ends = read_span(faults, span)
+        faults += _positive("burden", resistor.value)
         if faults:
             raise SignalError.of("this signal", faults)
         limit = None if loop_limit is None else read(loop_limit, unit="A", name="loop_limit")
@@ -223,8 +222,8 @@ class Attenuator(Signal):
         name: str = "voltage",
     ) -> None:
         arms = [arm if isinstance(arm, Part) else Part(arm) for arm in (top, bottom)]
-        ends = tuple(map(float, span))
-        faults = span_faults(ends)
+        faults: list[Fault] = []
+        ends = read_span(faults, span)
         faults += _positive("top", arms[0].value) + _positive("bottom", arms[1].value)
         if faults:
             raise SignalError.of("this signal", faults)
@@ -302,8 +301,9 @@ class Potentiometer(Signal):
         v_cc: float | None = None,
     ) -> None:
         track = total if isinstance(total, Part) else Part(total)
-        ends = tuple(map(float, span))
-        faults = span_faults(ends) + _positive("total", track.value)
+        faults: list[Fault] = []
+        ends = read_span(faults, span)
+        faults += _positive("total", track.value)
         if faults:
             raise SignalError.of("this signal", faults)
         source = excitation if isinstance(excitation, Part | None) else Part(excitation)
@@ -347,20 +347,6 @@ class Potentiometer(Signal):
     def on_short(self) -> float:
         """Voltage with the wiper shorted to ground [V]."""
         return 0.0
-
-
-def fill(target: Any, given: tuple[Any, ...]) -> None:
-    """Set all fields of a frozen dataclass while it is built.
-
-    Parameters
-    ----------
-    target : dataclass
-        Under construction.
-    given : tuple
-        Values of its fields, in their order.
-    """
-    for field, value in zip(target.__dataclass_fields__, given, strict=True):
-        object.__setattr__(target, field, value)
 
 
 def _positive(name: str, value: float) -> list[Fault]:

@@ -12,7 +12,7 @@ from hystkit.base.errors import Fault, SignalError
 from hystkit.base.quantity import parse_percent, read
 from hystkit.circuit.parts import Part
 from hystkit.circuit.reading import Quantity
-from hystkit.circuit.signals.base import Limits, Signal, span_faults
+from hystkit.circuit.signals.base import Limits, Signal, fill, read_span
 
 
 class Resistive(Protocol):
@@ -76,8 +76,8 @@ class SensorDivider(Signal):
         v_cc: float | None = None,
     ) -> None:
         fixed = other if isinstance(other, Part) else Part(other)
-        ends = tuple(map(float, span))
-        faults = span_faults(ends)
+        faults: list[Fault] = []
+        ends = read_span(faults, span)
         if sensor_at not in ("bottom", "top"):
             faults.append(
                 Fault(
@@ -98,9 +98,7 @@ class SensorDivider(Signal):
         if faults:
             raise SignalError.of("this signal", faults)
         source = excitation if isinstance(excitation, Part | None) else Part(excitation)
-        given = (sensor, fixed, sensor_at, source, ends, unit, name, v_cc)
-        for field, value in zip(self.__dataclass_fields__, given, strict=True):
-            object.__setattr__(self, field, value)
+        fill(self, (sensor, fixed, sensor_at, source, ends, unit, name, v_cc))
 
     @property
     def ratiometric(self) -> bool:
@@ -188,8 +186,8 @@ class DrivenSensor(Signal):
         name: str = "temperature",
     ) -> None:
         amperes = read(current, unit="A", name="current")
-        ends = tuple(map(float, span))
-        faults = span_faults(ends)
+        faults: list[Fault] = []
+        ends = read_span(faults, span)
         if not amperes > 0:
             faults.append(
                 Fault(
@@ -201,9 +199,7 @@ class DrivenSensor(Signal):
         if faults:
             raise SignalError.of("this signal", faults)
         limit = None if compliance is None else read(compliance, unit="V", name="compliance")
-        given = (sensor, amperes, parse_percent(current_tol), limit, ends, unit, name)
-        for field, value in zip(self.__dataclass_fields__, given, strict=True):
-            object.__setattr__(self, field, value)
+        fill(self, (sensor, amperes, parse_percent(current_tol), limit, ends, unit, name))
 
     @property
     def parameters(self) -> dict[str, Limits]:

@@ -6,6 +6,7 @@ import math
 
 from hystkit.base.quantity import show
 from hystkit.circuit.design import Design
+from hystkit.circuit.signals import Linear
 from hystkit.figures.lettering import in_measurand, short_unit, trip_digits, written, written_span
 from hystkit.numeric.views import Interval, Levels
 from hystkit.symbolic.symbols import NON_IDEAL, meaning
@@ -48,7 +49,9 @@ def _in_measurand(levels: Levels, trip: str) -> str:
     if trip != "width":
         return in_measurand(signal, getattr(levels, trip), trips)
     lower, upper = (float(signal.quantity(volts)) for volts in trips)
-    return in_measurand(_Itself(signal.unit), abs(upper - lower), (lower, upper))
+    # A difference stands for itself: it is written in the unit, not converted.
+    itself = Linear(1.0, span=signal.span, unit=signal.unit)
+    return in_measurand(itself, abs(upper - lower), (lower, upper))
 
 
 def _range(levels: Levels, span: Interval) -> str:
@@ -57,28 +60,13 @@ def _range(levels: Levels, span: Interval) -> str:
     A ratiometric sensor moves with the supply as the trips do: none is stated for it.
     """
     signal = levels.signal
-    if signal is None or getattr(signal, "ratiometric", False):
+    if signal is None or signal.ratiometric:
         return ""
     ends = sorted(span, reverse=signal.decreasing)
     trips = (levels.lower, levels.upper)
     low, high = (in_measurand(signal, end, trips) for end in ends)
     return f"{low.removesuffix(short_unit(signal)).rstrip()} to {high}"
 
-
-class _Itself:
-    """A quantity that stands for itself, to write differences in the unit of a signal."""
-
-    def __init__(self, unit: str) -> None:
-        self.unit = unit
-        self.name = ""
-        self.span = (0.0, 1.0)
-        self.decreasing = False
-
-    def volts(self, quantity: float) -> float:
-        return quantity
-
-    def quantity(self, volts: float) -> float:
-        return volts
 
 
 def value_rows(design: Design) -> list[tuple[str, str, str, str]]:
