@@ -91,7 +91,7 @@ def test_record_of_a_design_with_everything_is_plain_json() -> None:
 
 
 @dataclass(frozen=True)
-class Limited:
+class Limited(hk.signals.Signal):
     """A sensor whose quantity is known below 2 V only."""
 
     unit: str = "m"
@@ -99,10 +99,10 @@ class Limited:
     span: tuple[float, float] = (0.0, 1.0)
     decreasing: bool = False
 
-    def volts(self, quantity: Any) -> Any:
+    def _volts(self, quantity: Any, values: Any) -> Any:
         return 2 * quantity
 
-    def quantity(self, volts: Any) -> Any:
+    def _quantity(self, volts: Any, values: Any) -> Any:
         return np.where(np.asarray(volts) < 2, np.asarray(volts) / 2, np.nan)[()]
 
 

@@ -261,15 +261,15 @@ def test_another_ending_is_refused(tmp_path: Path) -> None:
 # -- sensors ---------------------------------------------------------------------------------
 
 
-class Bent:
+class Bent(hk.signals.Signal):
     """A sensor of one's own: bent, falling, and without a voltage beyond its reach."""
 
-    unit, name, span, decreasing = "bar", "pressure", (0.0, 10.0), True
+    unit, name, span = "bar", "pressure", (0.0, 10.0)
 
-    def volts(self, quantity: Any) -> Any:
+    def _volts(self, quantity: Any, values: Any) -> Any:
         return 4.5 - math.sqrt(quantity + 2) if quantity > -2 else math.nan
 
-    def quantity(self, volts: Any) -> Any:
+    def _quantity(self, volts: Any, values: Any) -> Any:
         return (4.5 - volts) ** 2 - 2
 
 
