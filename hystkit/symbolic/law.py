@@ -18,6 +18,7 @@ from hystkit.symbolic.arrange import by_source
 from hystkit.symbolic.ledger import HIGH, LOW, Definition, Ledger, expand, restrict
 from hystkit.symbolic.network import StateLaw, solve_state
 from hystkit.symbolic.printing import fits
+from hystkit.symbolic.shown import Equations
 from hystkit.symbolic.symbols import NON_IDEAL, meaning, symbol
 
 if TYPE_CHECKING:
@@ -25,7 +26,7 @@ if TYPE_CHECKING:
 
 
 @dataclass(frozen=True)
-class TripFormulas:
+class TripFormulas(Equations):
     """The four formulas of a stage, in symbols of the circuit.
 
     Attributes
@@ -38,6 +39,13 @@ class TripFormulas:
     lower: sp.Expr
     width: sp.Expr
     middle: sp.Expr
+
+    @property
+    def rows(self) -> tuple[tuple[sp.Symbol, sp.Expr], ...]:
+        """The four formulas, each with its symbol."""
+        names = ("V_upper", "V_lower", "V_width", "V_middle")
+        right = (self.upper, self.lower, self.width, self.middle)
+        return tuple(zip(map(symbol, names), right, strict=True))
 
     @property
     def names(self) -> tuple[str, ...]:
@@ -134,7 +142,7 @@ class Sensitivity:
 
 
 @dataclass(frozen=True)
-class SwitchingLaw:
+class SwitchingLaw(Equations):
     """What a stage does, derived from its circuit.
 
     `upper`, `lower`, `width` and `middle` are the full law in symbols of the circuit; `ideal` is
@@ -311,28 +319,32 @@ class SwitchingLaw:
         named = ((row.symbol, row.expression) for row in self.definitions)
         return (*named, (symbol("V_upper"), upper), (symbol("V_lower"), lower))
 
-    def to_text(self) -> str:
-        """Write the law as lines of plain text, named quantities first.
+    def latex(self, variant: str = "formula", *, design: Design | None = None) -> str:
+        """Write the law in LaTeX that needs amsmath only.
+
+        Parameters
+        ----------
+        variant : {"formula", "derivation", "numbers", "table"}
+            Both trips as one ``aligned`` block; the derivation as ``align*`` with its steps; the
+            formula with the design's numbers and units; a ``tabular`` of parts and trips.
+        design : Design, optional
+            Needed for "numbers" and "table".
 
         Returns
         -------
         str
-            One line for each quantity.
+            "formula" and "numbers" are for math mode.
+
+        Raises
+        ------
+        UnknownNameError
+            If there is no such variant.
+        InputError
+            If the design is missing or of another stage.
         """
-        return "\n".join(f"{left} = {right}" for left, right in self.rows)
-
-    def __str__(self) -> str:
-        """Return the text view."""
-        return self.to_text()
-
-    def latex(self, variant: str = "formula", *, design: Design | None = None) -> str:
-        """Write the law in LaTeX; see `hystkit.symbolic.writing.write`."""
         from hystkit.symbolic.writing import write  # writing builds on laws
 
         return write(self, variant, design)
-
-    def _repr_latex_(self) -> str:
-        return f"$\\displaystyle {self.latex()}$"
 
 
 def derive(subject: Stage | Design) -> SwitchingLaw:

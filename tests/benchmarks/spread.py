@@ -10,7 +10,7 @@ import numpy as np
 from numpy.typing import NDArray
 
 import hystkit as hk
-from hystkit.analyses.spread.sampling import Plan, blocks
+from hystkit.numeric.sampling import Plan, blocks
 from tests.benchmarks.measure import Comparison, alternating, in_fresh_process
 
 SAMPLES = 1_000_000

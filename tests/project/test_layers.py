@@ -112,7 +112,11 @@ def test_importing_the_package_itself_imports_no_layer() -> None:
         ("figures", "from ipywidgets import Image", "ipywidgets belongs to panels"),
         ("figures", "def f():\n    from sympy import latex", "sympy belongs to numeric, symbolic"),
         ("symbolic", "from numpy import array", "symbolic must do without numpy"),
-        ("circuit", "from scipy import interpolate", "circuit imports scipy inside a function only"),
+        (
+            "circuit",
+            "from scipy import interpolate",
+            "circuit imports scipy inside a function only",
+        ),
     ],
 )
 def test_a_breach_is_seen(layer: str, line: str, fault: str) -> None:

@@ -31,16 +31,20 @@ PUBLIC = [
     "Stage",
     "Supply",
     "SwitchingLaw",
+    "Trimmer",
     "TripPoints",
     "UnknownNameError",
     "Wire",
     "__version__",
+    "as_divider",
+    "as_source",
     "derive",
     "export",
     "figures",
     "levels",
     "load",
     "loop",
+    "padding",
     "page_fragment",
     "panels",
     "response",
@@ -49,6 +53,7 @@ PUBLIC = [
     "size",
     "spread",
     "sweep",
+    "trim",
     "trip_points",
     "write_page",
 ]
@@ -78,7 +83,6 @@ def test_type_checkers_see_the_same_names() -> None:
         if isinstance(node, ast.ImportFrom):
             for alias in node.names:
                 homes[alias.asname or alias.name] = f"{node.module}:{alias.name}"
-    homes["signals"] = homes.pop("signal")
     assert sorted([*homes, "__version__"]) == sorted(PUBLIC)
     for name, home in homes.items():
         module, _, attribute = home.partition(":")

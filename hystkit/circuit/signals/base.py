@@ -23,7 +23,20 @@ class Limits(NamedTuple):
 
     @classmethod
     def around(cls, value: float, tol: float) -> Limits:
-        """Take a relative tolerance on both sides of a value."""
+        """Take a relative tolerance on both sides of a value.
+
+        Parameters
+        ----------
+        value : float
+            Typical value.
+        tol : float
+            Relative tolerance, >= 0.
+
+        Returns
+        -------
+        Limits
+            The lower end first, also for a negative value.
+        """
         low, high = sorted((value * (1 - tol), value * (1 + tol)))
         return cls(low, value, high)
 

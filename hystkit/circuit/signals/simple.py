@@ -202,8 +202,8 @@ class Attenuator(Signal):
         Resistors of the divider [Ohm].
     span : pair of float
         Lowest and highest voltage that occurs ahead of the divider [V].
-    name : str, default "voltage"
-        Name of the voltage.
+    unit, name : str
+        Of the voltage.
     """
 
     top: Part
@@ -274,6 +274,8 @@ class Potentiometer(Signal):
         Of the position.
     linearity : float or str, default 0
         Magnitude of the linearity error, relative to the track.
+    v_cc : float, optional
+        Supply that the track is a share of [V]; a design fills it in.
 
     Notes
     -----

@@ -154,7 +154,20 @@ class NtcCoefficients:
         return {"R_factor": Limits.around(1.0, self.tol)}
 
     def resistance(self, celsius: Any, values: Mapping[str, Any] | None = None) -> Any:
-        """Resistance at a temperature; as `Ntc.resistance`."""
+        """Resistance at a temperature.
+
+        Parameters
+        ----------
+        celsius : float or ndarray
+            Temperature [°C].
+        values : mapping, optional
+            Parameters that differ from their typical values.
+
+        Returns
+        -------
+        float or ndarray
+            [Ohm].
+        """
         factor = (values or {}).get("R_factor", 1.0)
         # The cubic in ln R has one real root, by Cardano.
         y = (self.a - 1 / (np.asarray(celsius) + ZERO_CELSIUS)) / self.c
@@ -162,7 +175,20 @@ class NtcCoefficients:
         return factor * np.exp(np.cbrt(x - y / 2) - np.cbrt(x + y / 2))
 
     def quantity(self, ohms: Any, values: Mapping[str, Any] | None = None) -> Any:
-        """Temperature for a resistance; as `Ntc.quantity`."""
+        """Temperature for a resistance.
+
+        Parameters
+        ----------
+        ohms : float or ndarray
+            [Ohm].
+        values : mapping, optional
+            Parameters that differ from their typical values.
+
+        Returns
+        -------
+        float or ndarray
+            [°C].
+        """
         factor = (values or {}).get("R_factor", 1.0)
         with np.errstate(divide="ignore", invalid="ignore"):
             log = np.log(np.asarray(ohms) / factor)
@@ -217,11 +243,37 @@ class ResistanceTable:
         return {"R_factor": Limits.around(1.0, self.tol)}
 
     def resistance(self, quantity: Any, values: Mapping[str, Any] | None = None) -> Any:
-        """Resistance at a quantity [Ohm]; NaN outside the table."""
+        """Resistance at a quantity.
+
+        Parameters
+        ----------
+        quantity : float or ndarray
+            In the unit of the table.
+        values : mapping, optional
+            Parameters that differ from their typical values.
+
+        Returns
+        -------
+        float or ndarray
+            [Ohm]; NaN outside the table.
+        """
         return (values or {}).get("R_factor", 1.0) * np.exp(self._curve(quantity))
 
     def quantity(self, ohms: Any, values: Mapping[str, Any] | None = None) -> Any:
-        """Give the quantity for a resistance; NaN outside the table."""
+        """Give the quantity for a resistance.
+
+        Parameters
+        ----------
+        ohms : float or ndarray
+            [Ohm].
+        values : mapping, optional
+            Parameters that differ from their typical values.
+
+        Returns
+        -------
+        float or ndarray
+            In the unit of the table; NaN outside it.
+        """
         from hystkit.circuit.signals.inverse import inverse  # it is the general one
 
         factor = (values or {}).get("R_factor", 1.0)

@@ -47,6 +47,8 @@ class SensorDivider(Signal):
         Lowest and highest quantity that occurs.
     unit, name : str
         Of the quantity.
+    v_cc : float, optional
+        Supply that the divider is a share of [V]; a design fills it in.
 
     Raises
     ------
@@ -151,8 +153,10 @@ class DrivenSensor(Signal):
     ----------
     sensor : Ntc, NtcCoefficients, Rtd or ResistanceTable
         The sensor.
-    current : Part, float or str
+    current : float or str
         Current of the source [A].
+    current_tol : float or str, default 0
+        Its relative tolerance.
     compliance : float or str, optional
         Voltage that the source reaches with the sensor open [V].
     span : pair of float
