@@ -18,7 +18,9 @@ Examples
 
 from __future__ import annotations
 
+import sys
 from importlib import import_module
+from types import ModuleType
 from typing import TYPE_CHECKING
 
 __version__ = "0.1.0"
@@ -50,8 +52,16 @@ _HOME = {
     "Limits": "analyses.sizing.limits:Limits",
     "Sizing": "analyses.sizing.candidate:Sizing",
     "Candidate": "analyses.sizing.candidate:Candidate",
+    "as_divider": "analyses.setpoint.equivalent:as_divider",
+    "as_source": "analyses.setpoint.equivalent:as_source",
+    "Trimmer": "analyses.setpoint.trimmer:Trimmer",
+    "trim": "analyses.setpoint.trim:trim",
+    "padding": "analyses.setpoint.padding:padding",
     "spread": "analyses.spread.spread:spread",
     "Spread": "analyses.spread.result:Spread",
+    "review": "review.review:review",
+    "Review": "review.finding:Review",
+    "Finding": "review.finding:Finding",
     # what a person sees
     "figures": "figures",
     "panels": "panels",
@@ -78,6 +88,11 @@ if TYPE_CHECKING:
     from hystkit import export as export
     from hystkit import figures as figures
     from hystkit import panels as panels
+    from hystkit.analyses.setpoint.equivalent import as_divider as as_divider
+    from hystkit.analyses.setpoint.equivalent import as_source as as_source
+    from hystkit.analyses.setpoint.padding import padding as padding
+    from hystkit.analyses.setpoint.trim import trim as trim
+    from hystkit.analyses.setpoint.trimmer import Trimmer as Trimmer
     from hystkit.analyses.sizing.candidate import Candidate as Candidate
     from hystkit.analyses.sizing.candidate import Sizing as Sizing
     from hystkit.analyses.sizing.limits import Limits as Limits
@@ -112,10 +127,22 @@ if TYPE_CHECKING:
     from hystkit.numeric.response import sweep as sweep
     from hystkit.numeric.trips import TripPoints as TripPoints
     from hystkit.numeric.trips import trip_points as trip_points
+    from hystkit.review.finding import Finding as Finding
+    from hystkit.review.finding import Review as Review
+    from hystkit.review.review import review as review
     from hystkit.symbolic.law import SwitchingLaw as SwitchingLaw
     from hystkit.symbolic.law import derive as derive
 
 else:
+
+    class _Package(ModuleType):
+        """Importing the layer `review` would put its module where the function of that name is."""
+
+        def __setattr__(self, name: str, value: object) -> None:
+            if not (isinstance(value, ModuleType) and ":" in _HOME.get(name, "")):
+                super().__setattr__(name, value)
+
+    sys.modules[__name__].__class__ = _Package
 
     def __getattr__(name: str) -> object:
         """Load a public name when it is first asked for."""

@@ -37,7 +37,7 @@ def response(design: Design, time: ArrayLike, signal: ArrayLike) -> Response:
     Raises
     ------
     InputError
-        If the arrays do not fit each other or time does not rise.
+        If the arrays do not fit each other, time does not rise or the signal is not finite.
 
     Notes
     -----
@@ -161,6 +161,15 @@ def _check(time: NDArray[np.float64], signal: NDArray[np.float64]) -> None:
                 have=f"a step of {np.min(np.diff(time)):g} s",
                 rule="each instant is later than the one before",
                 remedy="sort the samples by time and leave doubles out",
+            )
+        )
+    if not np.all(np.isfinite(signal)):
+        faults.append(
+            Fault(
+                "the signal is not finite.",
+                have=f"{np.count_nonzero(~np.isfinite(signal))} of {signal.size} samples",
+                rule="what the switch remembers needs every sample",
+                remedy="leave such samples out, or interpolate them",
             )
         )
     if faults:

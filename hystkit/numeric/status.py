@@ -69,10 +69,13 @@ def status_of(
     # An impossible element may hold inf - inf; the comparison is false there, as it should be.
     switches = np.isfinite(upper) & np.isfinite(lower) & np.greater(upper, lower)
     _mark(status, Status.NO_HYSTERESIS, switches)
+    _mark(status, Status.SENSE, np.logical_not(against_sense))
     _mark(status, Status.OUTPUT_LEVELS, np.greater(high, values["V_OL"]))
     _mark(status, Status.RAILS, np.greater(values["V_CC"], values.get("V_EE", 0.0)))
     for name in parts:
         _mark(status, Status.NOT_POSITIVE, np.greater(values[name], 0))
+    for name in ("R_OH", "R_OL"):
+        _mark(status, Status.NOT_POSITIVE, np.greater_equal(values.get(name, 0.0), 0))
     for value in values.values():
         _mark(status, Status.NOT_FINITE, np.isfinite(value))
     return status

@@ -190,10 +190,13 @@ def overridden(design: Design, overrides: dict[str, Any]) -> dict[str, Any]:
 
 def _against_sense(stage: Stage, values: Mapping[str, Any]) -> Any:
     """Tell where the values of a custom circuit turn the sense that was stated for it."""
-    compiled = kernel(stage)
-    ends = [compiled.voltages(compiled.law.upper_state, values, signal) for signal in (0.0, 1.0)]
-    at_zero, at_one = (end["plus"] - end["minus"] for end in ends)
-    return at_one >= at_zero if stage.sense == "inverting" else at_one <= at_zero
+    against: Any = False
+    for state in ("high", "low"):
+        ends = [kernel(stage).voltages(state, values, signal) for signal in (0.0, 1.0)]
+        at_zero, at_one = (end["plus"] - end["minus"] for end in ends)
+        turned = at_one >= at_zero if stage.sense == "inverting" else at_one <= at_zero
+        against = np.logical_or(against, turned)
+    return against
 
 
 def _numbers(overrides: Mapping[str, Any]) -> dict[str, Any]:
@@ -219,7 +222,8 @@ def _number(name: str, value: Any, faults: list[Fault]) -> float | NDArray[np.fl
         unit = UNITS.get(name) or {"R": "Ω", "V": "V", "I": "A"}[name[0]]
         return collect(faults, lambda: read(value, unit=unit, name=name))
     try:
-        return np.asarray(value, dtype=float)[()]
+        # numpy would take None for NaN.
+        return np.asarray(value if value is not None else "", dtype=float)[()]
     except (TypeError, ValueError):
         faults.append(
             Fault(

@@ -220,3 +220,63 @@ def test_four_free_parts() -> None:
         found = form.size(upper=upper, lower=lower, series="E12", ranges=(1e3, 1e5), suggest=False)
         errors = exhaustive.nominal_errors(form.template(), points, upper, lower)
         assert [c.error for c in found] == pytest.approx(np.sort(errors)[:10], rel=1e-9, abs=1e-12)
+
+
+@pytest.mark.parametrize("seed", range(40))
+def test_any_request_finds_what_all_combinations_hold(seed: int) -> None:
+    rng = np.random.default_rng(seed)
+    form, request = drawn(rng)
+    points = exhaustive.grid(form.free, "E12", (1e3, 1e5))
+    template = form.template(0.02)
+    ((upper, lower),) = targets(form, points, 1, seed)
+    loads = exhaustive.loads(template, points)
+    limits = {
+        name: most
+        for name, values in loads.items()
+        if rng.random() < 0.3 and (most := float(np.nanquantile(values, 0.5))) > 0
+    }
+    kept = np.all([loads[n] <= most for n, most in limits.items()] or [np.True_], axis=0)
+    half = float(rng.uniform(0.02, 0.3))
+    windows = {"upper": (upper - half, upper + half), "lower": (lower - half, lower + half)}
+    if request == "windows":
+        found = form.size(**windows, series="E12", ranges=(1e3, 1e5), tol=0.02, limits=limits,
+                          suggest=False)  # fmt: skip
+        errors = exhaustive.worst_errors(template, points, **windows)
+    else:
+        found = form.size(upper=upper, lower=lower, series="E12", ranges=(1e3, 1e5), limits=limits,
+                          suggest=False)  # fmt: skip
+        errors = exhaustive.nominal_errors(template, points, upper, lower)
+    errors = np.where(kept, errors, np.inf)
+    got = [c.worst_error if request == "windows" else c.error for c in found]
+    expected = np.sort(errors[np.isfinite(errors)])[:10]
+    assert got == pytest.approx(expected, rel=1e-8, abs=1e-11)
+
+
+def drawn(rng: np.random.Generator) -> tuple[Form, str]:
+    """A form with values at which parts act in different directions over the grid."""
+    while True:
+        stage = hk.Stage.all()[rng.integers(20)]
+        if stage.sense == "non-inverting" and rng.random() < 0.4:
+            stage = stage.with_options("R_G")
+        free = tuple(str(n) for n in rng.permutation(stage.parts)[:3])
+        fixed = {n: hk.Part(10 ** rng.uniform(3.3, 5.5), tol=rng.choice([0, 0.05]))
+                 for n in stage.parts if n not in free}  # fmt: skip
+        rails = (5.0, None) if stage.supply == "single" else (12.0, -9.0)
+        levels: dict[str, Any] = {}
+        if stage.reference == "source":
+            levels["V_REF"] = hk.Part(rng.uniform(0.5, 4.5), tol=0.01)
+        if rng.random() < 0.4:
+            level = "V_OH" if stage.output == "push-pull" else "V_PU"
+            levels[level] = rng.uniform(3, 10)
+        device = hk.Device(
+            drop_high=rng.uniform(0, 1.5), drop_low=rng.uniform(0, 0.5), r_high=rng.uniform(0, 300),
+            r_low=rng.uniform(0, 300), leakage=rng.uniform(0, 1e-5), offset=rng.normal(0, 5e-3),
+            bias_plus=rng.normal(0, 2e-6), bias_minus=rng.normal(0, 1e-6),
+            limits={"offset": (-0.05, 0.05)},
+        )  # fmt: skip
+        form = Form(
+            stage, free, fixed, hk.Supply(*rails, tol=rng.choice([0, 0.03])), levels, device
+        )
+        points = exhaustive.grid(free, "E12", (1e3, 1e5))
+        if np.any(hk.trip_points(form.template(), **points).ok):
+            return form, str(rng.choice(["windows", "numbers"]))

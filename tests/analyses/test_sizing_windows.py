@@ -189,10 +189,63 @@ def test_numbers_in_the_measurand() -> None:
 
 def test_all_forms_are_compared_by_what_they_reach() -> None:
     windows: Any = {"upper": (2.6, 2.8), "lower": (2.2, 2.4)}
-    every = hk.size(supply=5.0, device=DEVICE, **windows, count=5)
-    alone = [hk.size(stage, supply=5.0, device=DEVICE, **windows, count=1)
-             for stage in (hk.Stage("inverting"), OPEN)]  # fmt: skip
+    every = hk.size(supply=5.0, device=DEVICE, **windows, series="E24", count=5)
+    customary = {"R_PU": hk.Part("4k7", tol=0.01)}
+    alone = [
+        hk.size(stage, supply=5.0, device=DEVICE, **windows, series="E24", count=1, parts=parts)
+        for stage, parts in ((hk.Stage("inverting"), {}), (OPEN, customary))
+    ]
     assert every[0].worst_error <= min(one[0].worst_error for one in alone) + 1e-9
+    assert every.searched == 4 * 73**3
     errors = [c.worst_error for c in every]
     assert errors == sorted(errors)
     assert {c.design.stage.reference for c in every} == {"divider"}
+
+
+@pytest.mark.parametrize("sense", ["inverting", "non-inverting"])
+def test_units_with_their_own_sensor_switch_within_the_windows(sense: str) -> None:
+    # The source resistance of the sensor moves with the quantity: each trip is where both agree.
+    on, off = ((27.0, 31.0), (21.0, 25.0)) if sense == "inverting" else ((21.0, 25.0), (27.0, 31.0))
+    device = hk.Device(drop_low=0.1, bias_plus=5e-8, bias_minus=5e-8)
+    found = hk.size(hk.Stage(sense), supply=hk.Supply(5.0, tol=0.05), signal=NTC, on_at=on,
+                    off_at=off, tol=0.001, count=1, device=device,
+                    parts={} if sense == "inverting" else {"R_B": "33k"})  # fmt: skip
+    best = found[0]
+    assert best.holds
+    assert "R_S" in best.design.parts
+    assert "R_S" not in {line.reference for line in best.bill}
+    rng = np.random.default_rng(8)
+    count = 20_000
+    box = {n: pair for n, pair in toleranced(best.design).items() if n != "R_S"}
+    units = {n: rng.uniform(*pair, count) for n, pair in box.items()}
+    sensor = {
+        n: rng.uniform(p.low, p.high, count) for n, p in NTC.parameters.items() if p.low < p.high
+    }
+    sensor["V_CC"] = units["V_CC"]
+    for edge, trip in best.requirement.edges(sense).items():
+        quantity = np.full(count, 25.0)
+        for _ in range(60):
+            source = NTC.source_resistance(quantity, **sensor)
+            volts = getattr(hk.trip_points(best.design, **units, R_S=source), trip)
+            quantity = np.asarray(NTC.quantity(volts, **sensor))
+        low, high = {"on_at": on, "off_at": off}[edge]
+        assert low <= quantity.min()
+        assert quantity.max() <= high
+        bounds = best.switching[edge]
+        assert bounds[0] <= quantity.min() < quantity.max() <= bounds[1]
+
+
+def test_source_resistance_that_was_given_is_kept() -> None:
+    request: dict[str, Any] = {"supply": 5.0, "signal": NTC, "on_at": 28, "off_at": 22, "count": 1}
+    own = hk.size(hk.Stage("inverting"), **request, parts={"R_S": "5k"})[0]
+    assert own.design.parts["R_S"] == hk.Part("5k")
+    assert "R_S" in {line.reference for line in own.bill}
+    taken = hk.size(hk.Stage("inverting"), **request)[0].design.parts["R_S"]
+    ends = [float(NTC.at(5.0).source_resistance(q, R_25=r, R_X=x, B=b)) for q in (22, 28)
+            for r in (9900, 10100) for x in (9900, 10100)
+            for b in (3950 * 0.995, 3950 * 1.005)]  # fmt: skip
+    assert taken.value * (1 - taken.tol) == pytest.approx(min(ends), rel=1e-9)
+    assert taken.value * (1 + taken.tol) == pytest.approx(max(ends), rel=1e-9)
+    # A source without resistance brings none.
+    tank = hk.size(hk.Stage("inverting"), supply=5.0, signal=TANK, on_at=0.8, off_at=1.4, count=1)
+    assert "R_S" not in tank[0].design.parts

@@ -1,9 +1,12 @@
-"""What a slider move costs in the kernel, against drawing the same pictures afresh."""
+"""What a slider move costs in the kernel, against drawing the same things afresh."""
 
 from __future__ import annotations
 
 import io
 from typing import Any
+
+from matplotlib.backends.backend_agg import FigureCanvasAgg
+from matplotlib.figure import Figure
 
 import hystkit as hk
 from hystkit.circuit.demo import header_tank
@@ -11,6 +14,7 @@ from hystkit.circuit.preferred import step
 from tests.benchmarks.measure import Comparison, alternating
 
 SCALE = 2
+SAMPLES = 20_000
 
 
 def saved(picture: Any) -> bytes:
@@ -56,4 +60,47 @@ def comparisons() -> list[Comparison]:
     return [
         Comparison(subject, moved, "its pictures afresh, by savefig", by_savefig, at_least=4.0),
         Comparison(subject, moved, "its pictures afresh, own PNG writer", by_png),
+        spread_panel(),
     ]
+
+
+def spread_panel() -> Comparison:
+    """A slider move in SpreadPanel, against its samples and shares drawn the plain way."""
+    start = header_tank()
+    panel = hk.panels.SpreadPanel(start, upper=(2.25, 2.32), lower=(1.52, 1.6))
+    assert panel.request.samples == SAMPLES
+    width_px = panel.figure.picture.width_px
+
+    def changed(steps: int) -> hk.Design:
+        return start.with_parts(R_F=step(start.parts["R_F"].value, "E96", steps))
+
+    def move(turn: int) -> None:
+        panel.design = changed(2 * turn)
+
+    def plain(turn: int) -> None:
+        drawn_plainly(hk.spread(changed(2 * turn + 1), samples=SAMPLES), width_px)
+
+    moved, by_hist = alternating(move, plain)
+    assert not panel.error, panel.error
+    panel.close()
+    subject = "slider move in SpreadPanel, 20,000 samples"
+    return Comparison(subject, moved, "samples and shares by hist and barh", by_hist, limit=0.100)
+
+
+def drawn_plainly(found: hk.Spread, width_px: int) -> bytes:
+    """Histograms, limits and shares in a new figure, without ruler, schematic, law and table."""
+    figure = Figure(figsize=(width_px / 100, 5), dpi=100)
+    FigureCanvasAgg(figure)
+    above, below = figure.subplots(2)
+    for trip in ("upper", "lower"):
+        above.hist(found.samples[trip], bins=100, alpha=0.4, label=trip)
+        above.axvspan(*found.extremes[trip], alpha=0.1)
+    above.set_xlabel("signal / V")
+    above.legend()
+    for place, kind in enumerate(("upper", "lower", "width")):
+        shares = found.contributions[kind]
+        rows = [row + place / 4 for row in range(len(shares))]
+        below.barh(rows, list(shares.values()), height=0.25)
+    file = io.BytesIO()
+    figure.savefig(file, format="png", dpi=SCALE * 100)
+    return file.getvalue()

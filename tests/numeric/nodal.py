@@ -44,7 +44,7 @@ class Equations:
 
     def solve(self) -> dict[Any, Array]:
         found = np.linalg.solve(self.matrix, self.right[..., None])[..., 0]
-        return {unknown: found[:, row] for unknown, row in self.index.items()}
+        return {unknown: np.asarray(found[:, row]) for unknown, row in self.index.items()}
 
 
 def trip(elements: Iterable[Element], output: str, state: str, values: Mapping[str, Any]) -> Array:
@@ -60,11 +60,18 @@ def voltages(
     elements: Iterable[Element], output: str, state: str, values: Mapping[str, Any], signal: Any
 ) -> dict[str, Array]:
     """Voltage of every node for a given signal voltage, the output in `state`."""
+    solution = unknowns(elements, output, state, values, signal)
+    return {node: solution[node] for node in _nodes(elements)}
+
+
+def unknowns(
+    elements: Iterable[Element], output: str, state: str, values: Mapping[str, Any], signal: Any
+) -> dict[Any, Array]:
+    """Node voltages, and currents into the circuit: "drive" at the output, ("held", node) there."""
     equations = _circuit(tuple(elements), output, state, values)
     equations.add("signal voltage", "signal voltage", 1.0)
     equations.source("signal voltage", signal)
-    solution = equations.solve()
-    return {node: solution[node] for node in _nodes(elements)}
+    return equations.solve()
 
 
 def _circuit(

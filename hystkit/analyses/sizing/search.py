@@ -1,180 +1,283 @@
 """The best points of a grid of part values, found exactly without visiting all of it.
 
-Each trip point is a linear-fractional function of every single resistor, so it is monotone in it.
-The error, the largest of the distances of both trips from what is wanted, is then quasi-convex
-along any one part: it falls to its lowest value and rises again. For every combination of the other
-parts, bisection over the ordered values of one part finds that lowest value, and the points below a
-given error form an interval whose ends are found in the same way.
+The grid is cut into boxes. Each box gets a lower bound of the error over all of its points; a box
+whose bound lies above what is already reached holds no better point and is dropped, any other is
+halved, until its corners are all the points that it has. The bounds, and why they hold, are those
+of `hystkit.analyses.sizing.bounds`.
 """
 
 from __future__ import annotations
 
-from collections.abc import Callable, Mapping
+from collections.abc import Callable, Iterator
 from dataclasses import dataclass
-from typing import Any
+from functools import cached_property
+from itertools import product
 
 import numpy as np
 from numpy.typing import NDArray
 
+from hystkit.base.errors import InputError
+
 Floats = NDArray[np.float64]
-Indices = NDArray[np.intp]
+Indices = NDArray[np.int32]
+#: Part to values [Ohm], all of one shape.
+Points = dict[str, Floats]
 
-#: More combinations of the parts that are not bisected would take too long.
-MAX_COMBINATIONS = 3_000_000
-_BLOCK = 65_536
+#: A search that would have to look at more corners of boxes is refused.
+MAX_CORNERS = 60_000_000
+#: So is one whose two longest lists of values leave more combinations of the others: two trips
+#: fix no more than two values.
+MAX_LEFT_OPEN = 1_000_000
+# Boxes looked at in one go: few enough for their corners to stay in cache.
+_BLOCK = 4096
+# Boxes kept at each halving while a first level is looked for.
+_BEAM = 512
+# Errors as close as this are equal; rounding must not decide which of them are kept.
+_EQUAL = 1e-12
 
 
-@dataclass(frozen=True)
+@dataclass(frozen=True, eq=False)
 class Grid:
     """Values of the free parts.
 
     Attributes
     ----------
     values : dict
-        Part to its values in ascending order [Ohm].
+        Part to its values in ascending order, at least one each [Ohm].
     """
 
     values: dict[str, Floats]
 
     @property
-    def line(self) -> str:
-        """The part with the most values, along which the grid is bisected."""
-        return max(self.values, key=lambda name: self.values[name].size)
+    def size(self) -> int:
+        """Number of points."""
+        return int(np.prod([v.size for v in self.values.values()], dtype=float))
 
     @property
-    def others(self) -> tuple[str, ...]:
-        """The parts that are combined with each other."""
-        return tuple(name for name in self.values if name != self.line)
+    def left_open(self) -> int:
+        """Number of combinations of all parts but the two with most values."""
+        sizes = sorted(v.size for v in self.values.values())
+        return int(np.prod(sizes[:-2], dtype=float))
 
-    @property
-    def combinations(self) -> int:
-        """Number of combinations of the other parts."""
-        return int(np.prod([self.values[name].size for name in self.others], dtype=float))
-
-    def thinned(self, every: int = 8) -> dict[str, Floats]:
-        """Give the points of a coarser grid that keeps the ends of every part.
+    def at(self, indices: Indices) -> Points:
+        """Give part values at places of the grid.
 
         Parameters
         ----------
-        every : int
-            One value of so many is kept.
+        indices : ndarray of int, shape (..., parts)
+            Place of each part's value.
 
         Returns
         -------
         dict
-            Part to values, one for each point [Ohm].
+            Part to values, shape (...) [Ohm].
         """
-        kept = [np.append(v[:-1:every], v[-1]) for v in self.values.values()]
-        return dict(zip(self.values, map(np.ravel, np.meshgrid(*kept)), strict=True))
+        return {n: v[indices[..., axis]] for axis, (n, v) in enumerate(self.values.items())}
 
-    def point(self, combination: Indices, index: Indices) -> dict[str, Floats]:
-        """Give part values of grid points.
-
-        Parameters
-        ----------
-        combination, index : ndarray of int, shape (n,)
-            Number of the combination, and place along the line.
-
-        Returns
-        -------
-        dict
-            Part to values, shape (n,) [Ohm].
-        """
-        shape = tuple(self.values[name].size for name in self.others)
-        places = np.unravel_index(combination, shape) if shape else ()
-        found = {n: self.values[n][p] for n, p in zip(self.others, places, strict=True)}
-        return {**found, self.line: self.values[self.line][index]}
+    @cached_property
+    def logs(self) -> list[Floats]:
+        """Logarithms of the values, by which boxes are measured."""
+        return [np.log(v) for v in self.values.values()]
 
 
-#: Error of points of the grid, given by their part values.
-Error = Callable[[Mapping[str, Any]], Floats]
-#: Which points of the grid are allowed, given by their part values.
-Allowed = Callable[[Mapping[str, Any]], NDArray[np.bool_]]
+@dataclass(frozen=True, eq=False)
+class Boxes:
+    """Some boxes of a grid.
+
+    Attributes
+    ----------
+    low, high : ndarray of int, shape (boxes, parts)
+        First and last place of each part's value.
+    """
+
+    low: Indices
+    high: Indices
+
+    @classmethod
+    def whole(cls, grid: Grid) -> Boxes:
+        """One box that holds the whole grid."""
+        last = [v.size - 1 for v in grid.values.values()]
+        return cls(np.zeros((1, len(last)), np.int32), np.array([last], np.int32))
+
+    @property
+    def count(self) -> int:
+        """Number of boxes."""
+        return int(self.low.shape[0])
+
+    @property
+    def small(self) -> NDArray[np.bool_]:
+        """Whether a box has no points beside its corners, shape (boxes,)."""
+        found: NDArray[np.bool_] = np.all(self.high - self.low <= 1, axis=1)
+        return found
+
+    def corners(self) -> Indices:
+        """Places of all corners, shape (2**parts, boxes, parts)."""
+        return np.where(self._ends, self.high, self.low)
+
+    def points(self) -> Indices:
+        """Places of all points of small boxes, each point once, shape (points, parts)."""
+        flat = (self.high == self.low) & self._ends
+        found: Indices = self.corners()[~flat.any(axis=2)]
+        return found
+
+    @property
+    def _ends(self) -> NDArray[np.bool_]:
+        """Which end each part is at in each corner, shape (2**parts, 1, parts)."""
+        return np.array([*product((False, True), repeat=self.low.shape[1])])[:, None, :]
+
+    def take(self, chosen: NDArray[np.generic]) -> Boxes:
+        """Choose some of the boxes, by mask or by number."""
+        return Boxes(self.low[chosen], self.high[chosen])
+
+    def halved(self, grid: Grid) -> Boxes:
+        """Both halves of each box, cut across where it is longest by ratio of values."""
+        lengths = np.stack(
+            [logs[self.high[:, a]] - logs[self.low[:, a]] for a, logs in enumerate(grid.logs)],
+            axis=1,
+        )
+        axis = np.where(self.high - self.low > 1, lengths, -1.0).argmax(axis=1)
+        rows = np.arange(self.count)
+        middle = (self.low[rows, axis] + self.high[rows, axis]) // 2
+        left, right = self.high.copy(), self.low.copy()
+        left[rows, axis], right[rows, axis] = middle, middle + 1
+        return Boxes(np.concatenate([self.low, right]), np.concatenate([left, self.high]))
 
 
-def best_points(
-    grid: Grid, error: Error, allowed: Allowed, count: int
-) -> tuple[dict[str, Floats], Floats]:
-    """Find the allowed points with the smallest errors.
+#: From the corners of boxes, shape (corners, boxes): a lower bound of the error over each box,
+#: infinite where no point of it is allowed; and a guess of the best error in it.
+Bound = Callable[[Points], tuple[Floats, Floats]]
+#: Error of points, infinite where a point is not allowed; errors above a level, which comes as the
+#: second argument, need not be told apart.
+Error = Callable[[Points, float], Floats]
+
+
+def near_points(grid: Grid, bound: Bound, error: Error, count: int) -> tuple[Points, Floats, bool]:
+    """Find points with small errors, without a proof that there are none with smaller ones.
 
     Parameters
     ----------
     grid : Grid
-        At most `MAX_COMBINATIONS` combinations of the other parts.
+        Of any size.
+    bound : callable
+        Bounds the error of boxes from below.
     error : callable
-        Quasi-convex along each single part.
-    allowed : callable
-        Any condition.
+        Exact error of points.
+    count : int
+        How many points are wanted at least.
+
+    Returns
+    -------
+    dict, ndarray and bool
+        Part values and errors, best first; fewer than `count` only where fewer are allowed. And
+        whether these are all that are allowed.
+
+    Raises
+    ------
+    InputError
+        If too many points cannot be told apart from the best.
+    """
+    if grid.left_open > MAX_LEFT_OPEN:
+        raise _too_wide(grid)
+    beam = _BEAM
+    while True:
+        ends, cut = _descend(grid, bound, np.inf, beam)
+        points, errors = _evaluate(grid, ends, error, np.inf)
+        if errors.size >= count or not cut:
+            return points, errors, not cut
+        beam *= 8
+
+
+def best_points(grid: Grid, bound: Bound, error: Error, count: int) -> tuple[Points, Floats]:
+    """Find the points with the smallest errors.
+
+    Parameters
+    ----------
+    grid : Grid
+        Of any size.
+    bound : callable
+        Bounds the error of boxes from below.
+    error : callable
+        Exact error of points.
     count : int
         How many points are wanted.
 
     Returns
     -------
     dict and ndarray
-        Part values and errors of at most `count` points, best first; exact over the whole grid.
+        Part values and errors of all points up to the error of number `count`, so that points of
+        equal error come together; best first. Fewer where fewer are allowed.
+
+    Raises
+    ------
+    InputError
+        If too many points cannot be told apart from the best.
     """
-    turning = _turning_points(grid, error)
-    lowest = error(grid.point(*turning))
-    order = np.argsort(lowest, kind="stable")
-    taken = min(count, order.size)
-    while True:
-        level = lowest[order[taken - 1]]
-        near = order[: np.searchsorted(lowest[order], level, side="right")]
-        combination, index = _below(grid, error, turning[0][near], turning[1][near], level)
-        point = grid.point(combination, index)
-        kept = np.flatnonzero(allowed(point))
-        if kept.size >= count or taken == order.size:
-            found = {name: v[kept] for name, v in point.items()}
-            errors = error(found) if kept.size else np.empty(0)
-            best = np.argsort(errors, kind="stable")[:count]
-            if kept.size >= count or level == lowest[order[-1]]:
-                return {name: v[best] for name, v in found.items()}, errors[best]
-        taken = min(4 * taken, order.size)
+    points, errors, complete = near_points(grid, bound, error, count)
+    if errors.size < count:
+        return points, errors
+    level = float(errors[count - 1])
+    if not complete:
+        points, errors = _evaluate(grid, _descend(grid, bound, level, None)[0], error, level)
+    level = float(errors[count - 1])
+    kept = np.searchsorted(errors, level + _EQUAL * (1 + abs(level)), side="right")
+    return {name: p[:kept] for name, p in points.items()}, errors[:kept]
 
 
-def _turning_points(grid: Grid, error: Error) -> tuple[Indices, Indices]:
-    """Find the place of the lowest error along each line."""
-    combination = np.arange(grid.combinations)
-    low = np.zeros_like(combination)
-    high = np.full_like(combination, grid.values[grid.line].size - 1)
-    for _ in range(int(grid.values[grid.line].size).bit_length()):
-        middle = (low + high) // 2
-        falling = _in_blocks(grid, error, combination, middle) > _in_blocks(
-            grid, error, combination, np.minimum(middle + 1, high)
-        )
-        open_ = low < high
-        low = np.where(open_ & falling, middle + 1, low)
-        high = np.where(open_ & ~falling, middle, high)
-    return combination, low
+def _descend(grid: Grid, bound: Bound, level: float, beam: int | None) -> tuple[Boxes, bool]:
+    """Halve boxes down to small ones; tell too whether more than `beam` of them were dropped."""
+    boxes, done, seen, cut = Boxes.whole(grid), [], 0, False
+    while boxes.count:
+        seen += boxes.count << len(grid.values)
+        if seen > MAX_CORNERS:
+            raise _too_wide(grid)
+        bounds, guesses = _bounds(grid, boxes, bound)
+        kept = np.flatnonzero(bounds <= level + _EQUAL * (1 + abs(level)))
+        kept = kept[bounds[kept] < np.inf]
+        if beam is not None and kept.size > beam:
+            order = np.lexsort((guesses[kept], bounds[kept]))
+            kept, cut = np.sort(kept[order[:beam]]), True
+        boxes = boxes.take(kept)
+        small = boxes.small
+        done.append(boxes.take(small))
+        boxes = boxes.take(~small)
+        if boxes.count:
+            boxes = boxes.halved(grid)
+    low, high = (np.concatenate([getattr(b, end) for b in done]) for end in ("low", "high"))
+    return Boxes(low, high), cut
 
 
-def _below(
-    grid: Grid, error: Error, combination: Indices, turning: Indices, level: float
-) -> tuple[Indices, Indices]:
-    """List all points of the given lines whose error is at most `level`."""
-    last = grid.values[grid.line].size - 1
-    first = _edge(grid, error, combination, np.zeros_like(turning), turning, level)
-    end = _edge(grid, error, combination, np.full_like(turning, last), turning, level)
-    lengths = end - first + 1
-    starts = np.repeat(first - np.concatenate([[0], np.cumsum(lengths)[:-1]]), lengths)
-    return np.repeat(combination, lengths), np.arange(lengths.sum()) + starts
+def _bounds(grid: Grid, boxes: Boxes, bound: Bound) -> tuple[Floats, Floats]:
+    pairs = [bound(grid.at(block.corners())) for block in _blocks(boxes)]
+    bounds, guesses = zip(*pairs, strict=True)
+    return np.concatenate(bounds), np.concatenate(guesses)
 
 
-def _edge(
-    grid: Grid, error: Error, combination: Indices, outer: Indices, inner: Indices, level: float
-) -> Indices:
-    """Find the point furthest out, between `inner` and `outer`, that is still at most `level`."""
-    reached = _in_blocks(grid, error, combination, outer) <= level
-    inside, outside = np.where(reached, outer, inner), outer.copy()
-    while np.any(np.abs(outside - inside) > 1):
-        middle = (inside + outside) // 2
-        good = _in_blocks(grid, error, combination, middle) <= level
-        inside, outside = np.where(good, middle, inside), np.where(good, outside, middle)
-    return inside
+def _evaluate(grid: Grid, ends: Boxes, error: Error, level: float) -> tuple[Points, Floats]:
+    """Errors of all points of small boxes that do not exceed a level, best first."""
+    places, errors = [], []
+    for block in _blocks(ends):
+        points = block.points()
+        found = error(grid.at(points), level)
+        good = (found <= level + _EQUAL * (1 + abs(level))) & (found < np.inf)
+        places.append(points[good])
+        errors.append(found[good])
+    if not places:
+        return grid.at(np.empty((0, len(grid.values)), np.int32)), np.empty(0)
+    all_places, all_errors = np.concatenate(places), np.concatenate(errors)
+    order = np.lexsort((*all_places.T[::-1], all_errors))
+    return grid.at(all_places[order]), all_errors[order]
 
 
-def _in_blocks(grid: Grid, error: Error, combination: Indices, index: Indices) -> Floats:
-    """Evaluate in blocks that stay in cache."""
-    parts = range(0, combination.size, _BLOCK)
-    blocks = [error(grid.point(combination[i : i + _BLOCK], index[i : i + _BLOCK])) for i in parts]
-    return np.concatenate(blocks)
+def _blocks(boxes: Boxes) -> Iterator[Boxes]:
+    for start in range(0, boxes.count, _BLOCK):
+        yield boxes.take(np.arange(start, min(start + _BLOCK, boxes.count)))
+
+
+def _too_wide(grid: Grid) -> InputError:
+    return InputError(
+        "the search is too wide: too many points cannot be told apart from the best.",
+        asked=" x ".join(f"{v.size} values of {n}" for n, v in grid.values.items()),
+        have=f"{grid.left_open:,} combinations beside the two longest lists",
+        rule="two trips fix two values; the others should be few",
+        remedy="fix one part, or give narrower ranges or a coarser series",
+    )

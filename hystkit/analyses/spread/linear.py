@@ -6,10 +6,10 @@ from collections.abc import Iterable, Mapping
 from dataclasses import dataclass
 from math import fsum, hypot
 
-from hystkit.analyses.spread.box import Box
 from hystkit.base.frozen import Named
 from hystkit.circuit.design import Design
 from hystkit.numeric.fractions import slopes
+from hystkit.numeric.uncertain import Box
 
 #: What the shares in `contributions` are shares of.
 MEASURE = "normalised squared sensitivities"

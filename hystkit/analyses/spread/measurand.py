@@ -11,12 +11,12 @@ from typing import TYPE_CHECKING, Any
 import numpy as np
 from numpy.typing import NDArray
 
-from hystkit.analyses.spread.yields import Window, Yield, yield_of
 from hystkit.base.fields import Field, Viewed
 from hystkit.base.frozen import Named
-from hystkit.circuit.signal import Signal
+from hystkit.circuit.signals import Signal
 from hystkit.numeric.trips import trip_points
 from hystkit.numeric.views import Interval
+from hystkit.numeric.yields import Window, Yield, yield_of
 
 if TYPE_CHECKING:
     from hystkit.analyses.spread.result import Spread

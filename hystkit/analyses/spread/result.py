@@ -11,18 +11,18 @@ from numpy.typing import NDArray
 
 from hystkit.analyses.spread import linear
 from hystkit.analyses.spread.bounds import Bound, bounds
-from hystkit.analyses.spread.box import Box
 from hystkit.analyses.spread.measurand import MeasurandSpread
-from hystkit.analyses.spread.sampling import Plan, Samples, sampled
-from hystkit.analyses.spread.yields import Window, Yield, yield_of
 from hystkit.base.fields import Field, Viewed
 from hystkit.base.frozen import Named
 from hystkit.base.quantity import show
 from hystkit.circuit.design import Design
 from hystkit.numeric.extremes import KINDS, corners
+from hystkit.numeric.sampling import Plan, Samples, sampled
 from hystkit.numeric.status import Status
 from hystkit.numeric.trips import trip_points
+from hystkit.numeric.uncertain import Box
 from hystkit.numeric.views import Interval
+from hystkit.numeric.yields import Window, Yield, yield_of
 
 Array = NDArray[np.float64]
 

@@ -6,12 +6,12 @@ from math import isfinite
 from numbers import Integral, Real
 from typing import Any
 
-from hystkit.analyses.spread.box import uncertain
 from hystkit.analyses.spread.result import Spread
-from hystkit.analyses.spread.sampling import DISTRIBUTIONS, Plan
 from hystkit.base.errors import Fault, InputError
 from hystkit.base.nearest import unknown_name_fault
 from hystkit.circuit.design import Design
+from hystkit.numeric.sampling import DISTRIBUTIONS, Plan
+from hystkit.numeric.uncertain import uncertain
 from hystkit.numeric.views import Interval
 
 

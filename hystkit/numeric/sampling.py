@@ -10,7 +10,6 @@ import numpy as np
 from numpy.typing import NDArray
 from scipy.special import ndtr, ndtri
 
-from hystkit.analyses.spread.box import Box, Quantity
 from hystkit.base.errors import UnknownNameError
 from hystkit.base.nearest import unknown_name_fault
 from hystkit.circuit.design import Design
@@ -18,6 +17,7 @@ from hystkit.numeric.compile import kernel
 from hystkit.numeric.extremes import KINDS
 from hystkit.numeric.status import Status, status_of
 from hystkit.numeric.trips import overridden
+from hystkit.numeric.uncertain import Box, Quantity
 
 #: How the value of a quantity is distributed over its range.
 DISTRIBUTIONS = ("normal", "uniform", "binned")
