@@ -136,7 +136,7 @@ if TYPE_CHECKING:
 else:
 
     class _Package(ModuleType):
-        """Importing the layer `review` would put its module where the function of that name is."""
+        """Keeps a function's name, such as `review`, when the layer of that name is imported."""
 
         def __setattr__(self, name: str, value: object) -> None:
             if not (isinstance(value, ModuleType) and ":" in _HOME.get(name, "")):

@@ -2,8 +2,11 @@
 
 from __future__ import annotations
 
+import math
+from collections.abc import Mapping
 from dataclasses import dataclass
 from functools import cached_property
+from typing import Any
 
 import numpy as np
 
@@ -17,7 +20,7 @@ from hystkit.numeric.operating import (
     input_resistance,
     operating_point,
 )
-from hystkit.numeric.trips import TripPoints, trip_points
+from hystkit.numeric.trips import trip_points
 from hystkit.numeric.views import Levels
 
 STATES = ("high", "low")
@@ -87,7 +90,8 @@ class Evidence:
     @cached_property
     def signal_ends(self) -> tuple[float, ...]:
         """Signal voltages that occur [V]: both trips and, where known, both ends of the span."""
-        return (self.levels.lower, self.levels.upper, *(self.levels.signal_span or ()))
+        span = filter(math.isfinite, self.levels.signal_span or ())
+        return (self.levels.lower, self.levels.upper, *span)
 
     @cached_property
     def points(self) -> tuple[OperatingPoint, ...]:
@@ -113,37 +117,31 @@ class Evidence:
             for pin in ("plus", "minus")
         }
 
-    def without(self, **zeros: float) -> TripPoints:
-        """Trip points with some symbols at other values.
+    def moves(self, start: Mapping[str, float], **changes: Any) -> float:
+        """Largest move of a trip from one set of values to others [V].
 
         Parameters
         ----------
-        **zeros : float
-            Overrides as for `trip_points`.
-
-        Returns
-        -------
-        TripPoints
-            Of the changed design.
-        """
-        return trip_points(self.design, **zeros)
-
-    def shift(self, **changes: float) -> float:
-        """Largest move of a trip when some symbols take other values [V].
-
-        Parameters
-        ----------
-        **changes : float
-            Overrides as for `trip_points`.
+        start : mapping of str to float
+            Overrides as for `trip_points`, where the moves are counted from.
+        **changes : float or ndarray
+            Overrides to go to; as arrays, several sets of them.
 
         Returns
         -------
         float
-            [V]; NaN where the changed design does not switch.
+            [V] at the nominal supply; NaN where a changed design does not switch.
+
+        Notes
+        -----
+        A ratiometric signal moves with V_CC as well: what counts is the trip's share of it.
         """
-        other = trip_points(self.design, **changes)
-        moves = (other.upper - self.levels.upper, other.lower - self.levels.lower)
-        return float(np.max(np.abs(moves)))
+        first, then = (trip_points(self.design, **values) for values in (start, changes))
+        scale: Any = 1.0
+        if self.design.signal is not None and self.design.signal.ratiometric:
+            scale = self.design.supply.v_cc / then.v_cc
+        pairs = ((first.upper, then.upper), (first.lower, then.lower))
+        return float(np.max([np.abs(end * scale - begin) for begin, end in pairs]))
 
     def feedback(self) -> float:
         """Smallest share of the output's move that arrives between the inputs."""

@@ -6,7 +6,9 @@ import math
 from collections.abc import Iterator, Sequence
 from dataclasses import dataclass
 
+from hystkit.base.errors import UnknownNameError
 from hystkit.base.fields import Field, Viewed
+from hystkit.base.nearest import unknown_name_fault
 from hystkit.base.quantity import show
 
 #: Severities, the worst first, and the sign of each, so that colour is not alone in telling them.
@@ -66,7 +68,7 @@ class Review(Viewed):
         for finding in self.findings:
             if finding.name == name:
                 return finding
-        raise KeyError(f"no finding named {name!r}; there are {', '.join(self.names)}")
+        raise UnknownNameError.of("this review", [unknown_name_fault("finding", name, self.names)])
 
     @property
     def names(self) -> tuple[str, ...]:

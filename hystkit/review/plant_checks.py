@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import math
 from collections.abc import Iterator
 
 from hystkit.base.quantity import show
@@ -28,6 +29,14 @@ def reach(evidence: Evidence) -> Iterator[Finding]:
         yield Finding("reach", "note", "signal not described", remedy="signal=hk.signals...")
         return
     low, high = found.signal_span
+    if not (math.isfinite(low) and math.isfinite(high)):
+        yield Finding(
+            "reach",
+            "warning",
+            "the signal has no voltage at an end of its span",
+            remedy="a span over which it is known",
+        )
+        return
     margin = min(found.lower - low, high - found.upper)
     yield Finding(
         "reach",

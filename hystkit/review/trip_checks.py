@@ -4,6 +4,9 @@ from __future__ import annotations
 
 import math
 from collections.abc import Callable, Iterator
+from itertools import product
+
+import numpy as np
 
 from hystkit.base.quantity import show
 from hystkit.numeric.extremes import trip_intervals
@@ -79,13 +82,11 @@ def offset(evidence: Evidence) -> Iterator[Finding]:
     if largest == 0:
         yield Finding("offset", "note", "input offset not stated", remedy="the datasheet's limits")
         return
-    bare = evidence.without(V_OS=0.0)
-    moved = evidence.without(V_OS=largest)
-    move = max(abs(moved.upper - bare.upper), abs(moved.lower - bare.lower))
+    move = evidence.moves({"V_OS": 0.0}, V_OS=largest)
     yield _share(
         "offset",
-        f"an offset of {show(largest, 'V')} moves the trips by {show(float(move), 'V', 3)}",
-        float(move),
+        f"an offset of {show(largest, 'V')} moves the trips by {show(move, 'V', 3)}",
+        move,
         evidence.width,
         "a device with less offset, or a wider band",
     )
@@ -105,25 +106,20 @@ def bias(evidence: Evidence) -> Iterator[Finding]:
         How much of a tenth of the width they leave.
     """
     device = evidence.design.device
-    largest = {
-        name: max(device.limits.get(field, (getattr(device, field),) * 2), key=abs)
-        for name, field in (("I_BP", "bias_plus"), ("I_BN", "bias_minus"))
-    }
-    if not any(largest.values()):
+    fields = {"I_BP": "bias_plus", "I_BN": "bias_minus"}
+    ends = [device.limits.get(f, (getattr(device, f),) * 2) for f in fields.values()]
+    if not np.any(ends):
         yield Finding("bias", "note", "bias currents not stated", remedy="the datasheet's limits")
         return
-    bare = evidence.without(I_BP=0.0, I_BN=0.0)
-    moves = [
-        abs(getattr(evidence.without(**{"I_BP": 0.0, "I_BN": 0.0, name: value}), trip) - nominal)
-        for name, value in largest.items()
-        for trip, nominal in (("upper", bare.upper), ("lower", bare.lower))
-    ]
+    # Both currents act at once, each at either of its limits.
+    corners = np.array(list(product(*ends))).T
+    move = evidence.moves(dict.fromkeys(fields, 0.0), **dict(zip(fields, corners, strict=True)))
     seen = evidence.input_resistances()
     yield _share(
         "bias",
-        f"bias currents move a trip by {show(float(max(moves)), 'V', 3)}; the inputs see"
+        f"bias currents move a trip by {show(move, 'V', 3)}; the inputs see"
         f" {show(seen['plus'], 'Ω', 3)} (plus) and {show(seen['minus'], 'Ω', 3)} (minus)",
-        float(max(moves)),
+        move,
         evidence.width,
         "smaller resistances at the inputs, or a device with less bias current",
     )
@@ -142,14 +138,18 @@ def supply(evidence: Evidence) -> Iterator[Finding]:
     Finding
         Rate per volt of V_CC, and against the width over the supply's tolerance.
     """
-    v_cc, tol = evidence.design.supply.v_cc, evidence.design.supply.tol
-    step = v_cc * (tol or 0.01)
-    # Trips are affine in the supply with all that follows it: a difference is the exact rate.
-    move = evidence.shift(V_CC=v_cc + step)
-    rate = f"the supply moves the trips by {show(move / step, 'V', 3)} per volt of V_CC"
+    rails, tol = evidence.design.supply, evidence.design.supply.tol
+    step = (abs(rails.v_cc) or 1.0) * (tol or 0.01)
+    # Trips are affine in the rails with all that follows them: a difference is the exact rate.
+    rate_move = evidence.moves({}, V_CC=rails.v_cc + np.array((-step, step)))
+    rate = f"the supply moves the trips by {show(rate_move / step, 'V', 3)} per volt of V_CC"
     if tol == 0:
         yield Finding("supply", "note", f"{rate}; its tolerance is not stated", remedy="state it")
         return
+    ends = [rail * np.array((1 - tol, 1 + tol)) for rail in (rails.v_cc, rails.low_rail)]
+    names = ("V_CC", "V_EE")[: 1 + rails.split]
+    corners = np.array(list(product(*ends[: len(names)]))).T
+    move = evidence.moves({}, **dict(zip(names, corners, strict=True)))
     yield _share(
         "supply",
         f"{rate}, {show(move, 'V', 3)} over its tolerance",
@@ -161,6 +161,10 @@ def supply(evidence: Evidence) -> Iterator[Finding]:
 
 def _share(name: str, text: str, move: float, width: float, remedy: str) -> Finding:
     allowed = SMALL_SHARE * width
+    if math.isnan(move):
+        return Finding(
+            name, "fault", "the stage does not switch at the limits of this", remedy=remedy
+        )
     if move <= allowed:
         return Finding(name, "pass", text, allowed - move, "V")
     severity = "fault" if move >= width else "warning"

@@ -115,7 +115,7 @@ def test_a_misspelt_node_is_recognised() -> None:
 
 
 def test_all_faults_are_reported_at_once() -> None:
-    circuit = [
+    circuit: list[Element] = [
         R("R_T", "plus", "cc"),
         R("R_T", "plus", "ee"),
         R("Q_1", "plus", "a"),

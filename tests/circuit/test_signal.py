@@ -14,13 +14,15 @@ import hystkit as hk
 from hystkit.circuit.signals import Signal
 from tests.circuit.strategies import signals, within
 
-LEVEL = hk.signals.Linear(per_unit=1.2, at_zero="600 mV", span=(0, "2"), unit="m", name="level")
+SPAN: Any = (0, "2")
+LEVEL = hk.signals.Linear(per_unit=1.2, at_zero="600 mV", span=SPAN, unit="m", name="level")
 
 
 @given(signals(), within(-100, 100))
 def test_there_and_back(signal: hk.signals.Linear, quantity: float) -> None:
     volts = signal.volts(quantity)
-    room = 1e-12 * (abs(signal.at_zero) + abs(volts)) / abs(signal.per_unit)
+    # Below the smallest normal number a double has no twelve digits.
+    room = 1e-12 * (abs(signal.at_zero) + abs(volts)) / abs(signal.per_unit) + 1e-300
     assert signal.quantity(volts) == pytest.approx(quantity, rel=1e-12, abs=room)
 
 
@@ -59,8 +61,9 @@ def test_a_slope_of_zero_cannot_be_read_back() -> None:
 
 
 def test_every_fault_is_reported_at_once() -> None:
+    span: Any = (float("nan"), "1,5")
     with pytest.raises(hk.SignalError) as caught:
-        hk.signals.Linear("a", "b", span=(float("nan"), "1,5"))
+        hk.signals.Linear("a", "b", span=span)
     assert len(caught.value.faults) == 4
     with pytest.raises(hk.SignalError) as caught:
         hk.signals.Linear(0, span=(1, 0))

@@ -8,7 +8,7 @@ import importlib
 import pytest
 
 import hystkit as hk
-from tests.project.source import PACKAGE
+from tests.project.source import PACKAGE, run_python
 
 PUBLIC = [
     "Candidate",
@@ -94,8 +94,49 @@ def test_type_checkers_see_the_same_names() -> None:
 
 def test_unknown_name_is_an_attribute_error() -> None:
     with pytest.raises(AttributeError, match="'hystkit' has no attribute 'trip_point'") as caught:
-        hk.trip_point  # noqa: B018
+        hk.trip_point  # type: ignore[attr-defined]  # noqa: B018
     assert caught.value.name == "trip_point"
+
+
+@pytest.mark.parametrize(
+    "first",
+    [
+        "hk.review",
+        "import hystkit.review",
+        "import hystkit.review.finding",
+        "from hystkit.review import Finding",
+        "from hystkit import review",
+        "hk.Finding; import hystkit.review.review",
+        "import hystkit.review, importlib; importlib.reload(hk)",
+    ],
+)
+def test_a_function_keeps_its_name_from_the_layer_of_that_name(first: str) -> None:
+    code = f"""
+import hystkit as hk
+{first}
+import importlib, pickle, sys
+from hystkit import review
+from hystkit.review import review as inner
+from hystkit.review.review import review as home
+assert hk.review is review is inner is home is pickle.loads(pickle.dumps(review))
+layer = importlib.import_module("hystkit.review")
+assert layer is sys.modules["hystkit.review"] and layer.Finding is hk.Finding
+print(type(hk.review).__name__)
+"""
+    assert run_python(code).split() == ["function"]
+
+
+def test_other_modules_of_the_package_are_reached_as_ever() -> None:
+    code = """
+import hystkit.circuit.parts
+import hystkit.base.quantity as quantity
+assert hystkit.circuit.parts.Part is hystkit.Part
+assert hystkit.base.quantity is quantity
+hystkit.note = quantity
+del hystkit.note
+print(type(hystkit.circuit).__name__)
+"""
+    assert run_python(code).split() == ["module"]
 
 
 def test_errors_are_caught_as_the_builtin_a_caller_expects() -> None:

@@ -5,13 +5,10 @@ from __future__ import annotations
 from abc import ABC, abstractmethod
 from collections.abc import Mapping
 from dataclasses import fields, replace
-from functools import partial
 from typing import Any, NamedTuple, Self
 
-from hystkit.base.errors import Fault, SignalError
+from hystkit.base.errors import SignalError
 from hystkit.base.nearest import unknown_name_fault
-from hystkit.base.quantity import read
-from hystkit.circuit.reading import collect, members
 
 
 class Limits(NamedTuple):
@@ -185,35 +182,6 @@ class Signal(ABC):
                 remedy="signal.at(5.0), or volts(..., V_CC=5.0)",
             )
         return filled
-
-
-def read_span(faults: list[Fault], span: object) -> tuple[float, ...]:
-    """Read the span of a signal.
-
-    Parameters
-    ----------
-    faults : list of Fault
-        Where what is wrong with it is added.
-    span : object
-        As given: two numbers or texts, the lower one first.
-
-    Returns
-    -------
-    tuple of float
-        Both ends; NaN for what could not be read.
-    """
-    ends = tuple(collect(faults, partial(read, end, name="span")) for end in members(span))
-    # What could not be read is NaN here, and a fault already.
-    if len(ends) != 2 or ends[0] >= ends[1]:
-        faults.append(
-            Fault(
-                "the span of a signal is not an interval.",
-                asked=f"span = {span!r}",
-                rule="two numbers, the lower one first",
-                remedy="the range that occurs in service, such as (0, 2)",
-            )
-        )
-    return ends
 
 
 def fill(target: Any, given: tuple[Any, ...]) -> None:

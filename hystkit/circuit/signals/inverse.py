@@ -8,6 +8,8 @@ from typing import Any
 import numpy as np
 
 _STEPS = 80
+#: Rounding allowed beyond the ends, relative to the values there.
+_ROOM = 1e-12
 
 
 def inverse(function: Callable[[Any], Any], wanted: Any, ends: tuple[Any, Any]) -> Any:
@@ -30,7 +32,9 @@ def inverse(function: Callable[[Any], Any], wanted: Any, ends: tuple[Any, Any]) 
     low, high = (np.broadcast_to(end, np.shape(wanted)).astype(float) for end in ends)
     first, last = function(low), function(high)
     rising = last > first
-    inside = (wanted >= np.minimum(first, last)) & (wanted <= np.maximum(first, last))
+    # A value that was scaled there and back may lie beyond the end by its rounding.
+    room = _ROOM * np.maximum(np.abs(first), np.abs(last))
+    inside = (wanted >= np.minimum(first, last) - room) & (wanted <= np.maximum(first, last) + room)
     for _ in range(_STEPS):
         middle = (low + high) / 2
         beyond = (function(middle) > wanted) == rising

@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Callable, Mapping, Sequence
+from collections.abc import Callable, Iterable, Mapping
 from dataclasses import dataclass
 from functools import cached_property
 from typing import Any
@@ -11,9 +11,10 @@ import numpy as np
 
 from hystkit.base.errors import Fault, SignalError
 from hystkit.base.quantity import read
-from hystkit.circuit.reading import Quantity
-from hystkit.circuit.signals.base import Limits, Signal, fill, read_span
+from hystkit.circuit.reading import Quantity, collect
+from hystkit.circuit.signals.base import Limits, Signal, fill
 from hystkit.circuit.signals.inverse import inverse
+from hystkit.circuit.signals.read import is_table, read_numbers, read_span
 
 
 @dataclass(frozen=True)
@@ -44,27 +45,30 @@ class MeasuredTable(Signal):
 
     def __init__(
         self,
-        quantities: Sequence[float],
-        voltages: Sequence[float],
+        quantities: Iterable[Quantity],
+        voltages: Iterable[Quantity],
         *,
         unit: str = "",
         name: str = "signal",
         error: Quantity = 0.0,
     ) -> None:
-        known, volts = tuple(map(float, quantities)), tuple(map(float, voltages))
-        steps = np.diff(volts)
-        ordered = len(known) == len(volts) >= 2 and bool(
-            np.all(np.diff(known) > 0) and (np.all(steps > 0) or np.all(steps < 0))
-        )
-        if not ordered:
-            fault = Fault(
-                "this table cannot be read both ways.",
-                have=f"{len(known)} quantities, {len(volts)} voltages",
-                rule="two pairs at least, quantities rising, voltages all rising or all falling",
-                remedy="sort the pairs by the quantity and leave doubles out",
+        faults: list[Fault] = []
+        known = read_numbers(faults, "quantities", quantities)
+        volts = read_numbers(faults, "voltages", voltages, "V")
+        if not (faults or is_table(known, volts, fewest=2)):
+            faults.append(
+                Fault(
+                    "this table cannot be read both ways.",
+                    have=f"{len(known)} quantities, {len(volts)} voltages",
+                    rule="two pairs at least, quantities rising, voltages all rising or all"
+                    " falling",
+                    remedy="sort the pairs by the quantity and leave doubles out",
+                )
             )
-            raise SignalError.of("this signal", [fault])
-        fill(self, (known, volts, unit, name, abs(read(error, unit="V", name="error"))))
+        size = abs(collect(faults, lambda: read(error, unit="V", name="error")))
+        if faults:
+            raise SignalError.of("this signal", faults)
+        fill(self, (known, volts, unit, name, size))
 
     @property
     def span(self) -> tuple[float, float]:  # type: ignore[override]
@@ -126,7 +130,7 @@ class Function(Signal):
         to_volts: Callable[[Any], Any],
         to_quantity: Callable[[Any], Any] | None = None,
         *,
-        span: Sequence[float],
+        span: Iterable[Quantity],
         unit: str = "",
         name: str = "signal",
     ) -> None:
@@ -152,9 +156,19 @@ def _function_faults(
     ends: tuple[float, ...],
 ) -> list[Fault]:
     points = np.linspace(ends[0], ends[1], 257)
-    volts = np.asarray(to_volts(points), dtype=float)
-    steps = np.diff(volts)
-    if volts.shape != points.shape or not (np.all(steps > 0) or np.all(steps < 0)):
+    try:
+        volts = np.asarray(to_volts(points), dtype=float)
+        back = points if to_quantity is None else np.asarray(to_quantity(volts), dtype=float)
+    except (TypeError, ValueError, ArithmeticError) as error:
+        return [
+            Fault(
+                "this function cannot be evaluated over the span.",
+                asked=f"{ends[0]:g} to {ends[1]:g}, as one array",
+                have=f"{type(error).__name__}: {error}",
+                remedy="a function of arrays, such as lambda q: 0.1 * q",
+            )
+        ]
+    if volts.shape != points.shape or not is_table(points, volts, fewest=2):
         return [
             Fault(
                 "this function cannot be read back.",
@@ -164,15 +178,15 @@ def _function_faults(
                 remedy="a narrower span, or a function of arrays",
             )
         ]
-    if to_quantity is not None:
-        back = np.asarray(to_quantity(volts), dtype=float)
-        worst = float(np.max(np.abs(back - points))) / (ends[1] - ends[0])
-        if not worst < 1e-6:
-            return [
-                Fault(
-                    "to_quantity does not undo to_volts.",
-                    have=f"off by {100 * worst:.3g} % of the span",
-                    remedy="leave to_quantity out: it is found from to_volts",
-                )
-            ]
+    off = np.abs(back - points) if back.shape == points.shape else np.inf
+    worst = float(np.max(off)) / (ends[1] - ends[0])
+    if not worst < 1e-6:
+        return [
+            Fault(
+                "to_quantity does not undo to_volts.",
+                have=f"off by {100 * worst:.3g} % of the span",
+                rule="to_quantity(to_volts(q)) = q",
+                remedy="leave to_quantity out: it is found from to_volts",
+            )
+        ]
     return []

@@ -8,12 +8,12 @@ from typing import Any
 
 import numpy as np
 
-from hystkit.base.errors import SignalError
+from hystkit.base.errors import Fault, SignalError
 from hystkit.base.nearest import unknown_name_fault
-from hystkit.base.quantity import read
 from hystkit.circuit.reading import Quantity
-from hystkit.circuit.signals.base import Limits
+from hystkit.circuit.signals.base import Limits, fill
 from hystkit.circuit.signals.inverse import inverse
+from hystkit.circuit.signals.read import read_positive
 
 #: Coefficients of IEC 60751.
 A, B, C = 3.9083e-3, -5.775e-7, -4.183e-12
@@ -56,17 +56,13 @@ class Rtd:
     tolerance_class: str | None = None
 
     def __init__(self, r0: Quantity = 100.0, tolerance_class: str | None = None) -> None:
-        object.__setattr__(self, "r0", read(r0, unit="Ω", name="r0"))
-        object.__setattr__(self, "tolerance_class", tolerance_class)
+        faults: list[Fault] = []
+        ohms = read_positive(faults, "r0", r0, "Ω")
         if tolerance_class is not None and tolerance_class not in CLASSES:
-            fault = unknown_name_fault("tolerance class", tolerance_class, CLASSES)
-            raise SignalError.of("this thermometer", [fault])
-        if not self.r0 > 0:
-            raise SignalError(
-                "a resistance thermometer has a positive resistance.",
-                asked=f"r0 = {self.r0:g} Ω",
-                remedy="100 or 1000",
-            )
+            faults.append(unknown_name_fault("tolerance class", tolerance_class, CLASSES))
+        if faults:
+            raise SignalError.of("this thermometer", faults)
+        fill(self, (ohms, tolerance_class))
 
     @property
     def parameters(self) -> dict[str, Limits]:

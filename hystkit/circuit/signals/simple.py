@@ -2,16 +2,22 @@
 
 from __future__ import annotations
 
-import math
-from collections.abc import Mapping, Sequence
+from collections.abc import Iterable, Mapping
 from dataclasses import dataclass
 from typing import Any
 
 from hystkit.base.errors import Fault, SignalError
-from hystkit.base.quantity import parse_percent, read
+from hystkit.base.quantity import read
 from hystkit.circuit.parts import Part
 from hystkit.circuit.reading import Quantity, collect
-from hystkit.circuit.signals.base import Limits, Signal, fill, read_span
+from hystkit.circuit.signals.base import Limits, Signal, fill
+from hystkit.circuit.signals.read import (
+    read_excitation,
+    read_positive,
+    read_resistor,
+    read_share,
+    read_span,
+)
 
 
 @dataclass(frozen=True)
@@ -64,7 +70,7 @@ class Linear(Signal):
         per_unit: Quantity,
         at_zero: Quantity = 0.0,
         *,
-        span: Sequence[float],
+        span: Iterable[Quantity],
         unit: str = "",
         name: str = "signal",
         slope_tol: Quantity = 0.0,
@@ -75,7 +81,7 @@ class Linear(Signal):
         offset = collect(faults, lambda: read(at_zero, unit="V", name="at_zero"))
         ends = read_span(faults, span)
         error = collect(faults, lambda: read(zero_error, unit="V", name="zero_error"))
-        share = collect(faults, lambda: parse_percent(slope_tol))
+        share = read_share(faults, "slope_tol", slope_tol)
         if slope == 0:
             faults.append(
                 Fault(
@@ -145,20 +151,22 @@ class CurrentLoop(Signal):
         self,
         burden: Part | Quantity,
         *,
-        span: Sequence[float],
+        span: Iterable[Quantity],
         unit: str = "",
         name: str = "signal",
         error: Quantity = 0.0,
         loop_limit: Quantity | None = None,
     ) -> None:
-        resistor = burden if isinstance(burden, Part) else Part(burden)
         faults: list[Fault] = []
+        resistor = read_resistor(faults, "burden", burden)
         ends = read_span(faults, span)
-        faults += _positive("burden", resistor.value)
+        share = read_share(faults, "error", error)
+        limit = None
+        if loop_limit is not None:
+            limit = read_positive(faults, "loop_limit", loop_limit, "A")
         if faults:
             raise SignalError.of("this signal", faults)
-        limit = None if loop_limit is None else read(loop_limit, unit="A", name="loop_limit")
-        fill(self, (resistor, ends, unit, name, parse_percent(error), limit))
+        fill(self, (resistor, ends, unit, name, share, limit))
 
     @property
     def parameters(self) -> dict[str, Limits]:
@@ -217,14 +225,13 @@ class Attenuator(Signal):
         top: Part | Quantity,
         bottom: Part | Quantity,
         *,
-        span: Sequence[float],
+        span: Iterable[Quantity],
         unit: str = "V",
         name: str = "voltage",
     ) -> None:
-        arms = [arm if isinstance(arm, Part) else Part(arm) for arm in (top, bottom)]
         faults: list[Fault] = []
+        arms = [read_resistor(faults, "top", top), read_resistor(faults, "bottom", bottom)]
         ends = read_span(faults, span)
-        faults += _positive("top", arms[0].value) + _positive("bottom", arms[1].value)
         if faults:
             raise SignalError.of("this signal", faults)
         fill(self, (*arms, ends, unit, name))
@@ -296,20 +303,20 @@ class Potentiometer(Signal):
         total: Part | Quantity,
         excitation: Part | Quantity | None = None,
         *,
-        span: Sequence[float],
+        span: Iterable[Quantity],
         unit: str = "",
         name: str = "position",
         linearity: Quantity = 0.0,
         v_cc: float | None = None,
     ) -> None:
-        track = total if isinstance(total, Part) else Part(total)
         faults: list[Fault] = []
+        track = read_resistor(faults, "total", total)
+        source = read_excitation(faults, excitation)
         ends = read_span(faults, span)
-        faults += _positive("total", track.value)
+        share = read_share(faults, "linearity", linearity)
         if faults:
             raise SignalError.of("this signal", faults)
-        source = excitation if isinstance(excitation, Part | None) else Part(excitation)
-        fill(self, (track, source, ends, unit, name, parse_percent(linearity), v_cc))
+        fill(self, (track, source, ends, unit, name, share, v_cc))
 
     @property
     def ratiometric(self) -> bool:
@@ -349,16 +356,3 @@ class Potentiometer(Signal):
     def on_short(self) -> float:
         """Voltage with the wiper shorted to ground [V]."""
         return 0.0
-
-
-def _positive(name: str, value: float) -> list[Fault]:
-    if value > 0 and math.isfinite(value):
-        return []
-    return [
-        Fault(
-            f"{name} is not positive.",
-            asked=f"{name} = {value:g} Ω",
-            rule="a resistance is above zero",
-            remedy="a value such as 10k",
-        )
-    ]

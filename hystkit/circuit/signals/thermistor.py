@@ -2,17 +2,18 @@
 
 from __future__ import annotations
 
-from collections.abc import Mapping, Sequence
+from collections.abc import Iterable, Mapping
 from dataclasses import dataclass
-from functools import cached_property
+from functools import cached_property, partial
 from typing import Any
 
 import numpy as np
 
 from hystkit.base.errors import Fault, SignalError
-from hystkit.base.quantity import parse_percent, read
-from hystkit.circuit.reading import Quantity
-from hystkit.circuit.signals.base import Limits
+from hystkit.base.quantity import read
+from hystkit.circuit.reading import Quantity, collect
+from hystkit.circuit.signals.base import Limits, fill
+from hystkit.circuit.signals.read import is_table, read_numbers, read_positive, read_share
 
 ZERO_CELSIUS = 273.15
 T_25 = 25.0 + ZERO_CELSIUS
@@ -50,19 +51,17 @@ class Ntc:
     b_tol: float = 0.0
 
     def __init__(
-        self, r25: Quantity, b: float, r25_tol: Quantity = 0.0, b_tol: Quantity = 0.0
+        self, r25: Quantity, b: Quantity, r25_tol: Quantity = 0.0, b_tol: Quantity = 0.0
     ) -> None:
-        object.__setattr__(self, "r25", read(r25, unit="Ω", name="r25"))
-        object.__setattr__(self, "b", read(b, name="b"))
-        object.__setattr__(self, "r25_tol", parse_percent(r25_tol))
-        object.__setattr__(self, "b_tol", parse_percent(b_tol))
-        if not (self.r25 > 0 and self.b > 0):
-            fault = Fault(
-                "an NTC has a positive resistance and a positive B value.",
-                asked=f"r25 = {self.r25:g} Ω, b = {self.b:g} K",
-                remedy="the values of its datasheet, such as 10k and 3950",
-            )
-            raise SignalError.of("this thermistor", [fault])
+        faults: list[Fault] = []
+        ohms, kelvin = (
+            read_positive(faults, "r25", r25, "Ω"),
+            read_positive(faults, "b", b, ""),
+        )
+        tols = read_share(faults, "r25_tol", r25_tol), read_share(faults, "b_tol", b_tol)
+        if faults:
+            raise SignalError.of("this thermistor", faults)
+        fill(self, (ohms, kelvin, *tols))
 
     @property
     def parameters(self) -> dict[str, Limits]:
@@ -85,10 +84,10 @@ class Ntc:
         Returns
         -------
         float or ndarray
-            [Ohm].
+            [Ohm]; NaN below absolute zero.
         """
         r25, b = self._values(values)
-        return r25 * np.exp(b * (1 / (np.asarray(celsius) + ZERO_CELSIUS) - 1 / T_25))
+        return r25 * np.exp(b * (1 / _kelvin(celsius) - 1 / T_25))
 
     def quantity(self, ohms: Any, values: Mapping[str, Any] | None = None) -> Any:
         """Temperature for a resistance.
@@ -107,11 +106,22 @@ class Ntc:
         """
         r25, b = self._values(values)
         with np.errstate(divide="ignore", invalid="ignore"):
-            return 1 / (np.log(np.asarray(ohms) / r25) / b + 1 / T_25) - ZERO_CELSIUS
+            return _celsius(np.log(np.asarray(ohms) / r25) / b + 1 / T_25)
 
     def _values(self, values: Mapping[str, Any] | None) -> tuple[Any, Any]:
         given = values or {}
         return given.get("R_25", self.r25), given.get("B", self.b)
+
+
+def _kelvin(celsius: Any) -> Any:
+    """Absolute temperature; NaN where there is none."""
+    kelvin = np.asarray(celsius) + ZERO_CELSIUS
+    return np.where(kelvin > 0, kelvin, np.nan)[()]
+
+
+def _celsius(inverse_kelvin: Any) -> Any:
+    """Temperature for 1/T; NaN where no temperature is so hot."""
+    return np.where(inverse_kelvin > 0, 1 / inverse_kelvin - ZERO_CELSIUS, np.nan)[()]
 
 
 @dataclass(frozen=True)
@@ -137,16 +147,23 @@ class NtcCoefficients:
     c: float
     tol: float = 0.0
 
-    def __post_init__(self) -> None:
-        object.__setattr__(self, "tol", parse_percent(self.tol))
-        if not (self.b > 0 and self.c > 0):
-            fault = Fault(
-                "these coefficients do not describe an NTC.",
-                asked=f"a = {self.a:g}, b = {self.b:g}, c = {self.c:g}",
-                rule="b > 0 and c > 0",
-                remedy="the three coefficients of the datasheet, R in Ohm and T in kelvin",
+    def __init__(self, a: Quantity, b: Quantity, c: Quantity, tol: Quantity = 0.0) -> None:
+        faults: list[Fault] = []
+        given = {"a": a, "b": b, "c": c}
+        found = {name: collect(faults, partial(read, v, name=name)) for name, v in given.items()}
+        if found["b"] <= 0 or found["c"] <= 0:
+            faults.append(
+                Fault(
+                    "these coefficients do not describe an NTC.",
+                    asked=", ".join(f"{name} = {value!r}" for name, value in given.items()),
+                    rule="b > 0 and c > 0",
+                    remedy="the three coefficients of the datasheet, R in Ohm and T in kelvin",
+                )
             )
-            raise SignalError.of("this thermistor", [fault])
+        share = read_share(faults, "tol", tol)
+        if faults:
+            raise SignalError.of("this thermistor", faults)
+        fill(self, (*found.values(), share))
 
     @property
     def parameters(self) -> dict[str, Limits]:
@@ -170,7 +187,7 @@ class NtcCoefficients:
         """
         factor = (values or {}).get("R_factor", 1.0)
         # The cubic in ln R has one real root, by Cardano.
-        y = (self.a - 1 / (np.asarray(celsius) + ZERO_CELSIUS)) / self.c
+        y = (self.a - 1 / _kelvin(celsius)) / self.c
         x = np.sqrt((self.b / (3 * self.c)) ** 3 + y**2 / 4)
         return factor * np.exp(np.cbrt(x - y / 2) - np.cbrt(x + y / 2))
 
@@ -192,7 +209,7 @@ class NtcCoefficients:
         factor = (values or {}).get("R_factor", 1.0)
         with np.errstate(divide="ignore", invalid="ignore"):
             log = np.log(np.asarray(ohms) / factor)
-            return 1 / (self.a + self.b * log + self.c * log**3) - ZERO_CELSIUS
+            return _celsius(self.a + self.b * log + self.c * log**3)
 
 
 @dataclass(frozen=True)
@@ -218,24 +235,25 @@ class ResistanceTable:
     tol: float = 0.0
 
     def __init__(
-        self, quantities: Sequence[float], ohms: Sequence[float], tol: Quantity = 0.0
+        self, quantities: Iterable[Quantity], ohms: Iterable[Quantity], tol: Quantity = 0.0
     ) -> None:
-        object.__setattr__(self, "quantities", tuple(map(float, quantities)))
-        object.__setattr__(self, "ohms", tuple(map(float, ohms)))
-        object.__setattr__(self, "tol", parse_percent(tol))
-        steps = np.diff(self.ohms)
-        ordered = len(self.quantities) == len(self.ohms) >= 3 and bool(
-            np.all(np.diff(self.quantities) > 0) and (np.all(steps > 0) or np.all(steps < 0))
-        )
-        if not ordered or min(self.ohms) <= 0:
-            fault = Fault(
-                "this is not the table of a resistive sensor.",
-                have=f"{len(self.quantities)} quantities, {len(self.ohms)} resistances",
-                rule="three pairs at least, quantities rising, resistances positive and all rising"
-                " or all falling",
-                remedy="sort the pairs by the quantity and leave doubles out",
+        faults: list[Fault] = []
+        known = read_numbers(faults, "quantities", quantities)
+        resistances = read_numbers(faults, "ohms", ohms, "Ω")
+        if not (faults or (is_table(known, resistances, fewest=3) and min(resistances) > 0)):
+            faults.append(
+                Fault(
+                    "this is not the table of a resistive sensor.",
+                    have=f"{len(known)} quantities, {len(resistances)} resistances",
+                    rule="three pairs at least, quantities rising, resistances positive and all"
+                    " rising or all falling",
+                    remedy="sort the pairs by the quantity and leave doubles out",
+                )
             )
-            raise SignalError.of("this table", [fault])
+        share = read_share(faults, "tol", tol)
+        if faults:
+            raise SignalError.of("this table", faults)
+        fill(self, (known, resistances, share))
 
     @property
     def parameters(self) -> dict[str, Limits]:

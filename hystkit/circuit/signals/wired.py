@@ -2,17 +2,24 @@
 
 from __future__ import annotations
 
-from collections.abc import Mapping, Sequence
+from collections.abc import Iterable, Mapping
 from dataclasses import dataclass
 from typing import Any, Protocol
 
 import numpy as np
 
 from hystkit.base.errors import Fault, SignalError
-from hystkit.base.quantity import parse_percent, read
 from hystkit.circuit.parts import Part
 from hystkit.circuit.reading import Quantity
-from hystkit.circuit.signals.base import Limits, Signal, fill, read_span
+from hystkit.circuit.signals.base import Limits, Signal, fill
+from hystkit.circuit.signals.read import (
+    read_excitation,
+    read_positive,
+    read_resistor,
+    read_share,
+    read_span,
+    sensor_faults,
+)
 
 
 class Resistive(Protocol):
@@ -72,14 +79,16 @@ class SensorDivider(Signal):
         sensor_at: str = "bottom",
         excitation: Part | Quantity | None = None,
         *,
-        span: Sequence[float],
+        span: Iterable[Quantity],
         unit: str = "°C",
         name: str = "temperature",
         v_cc: float | None = None,
     ) -> None:
-        fixed = other if isinstance(other, Part) else Part(other)
         faults: list[Fault] = []
         ends = read_span(faults, span)
+        faults = faults or sensor_faults(sensor, ends, unit)
+        fixed = read_resistor(faults, "other", other)
+        source = read_excitation(faults, excitation)
         if sensor_at not in ("bottom", "top"):
             faults.append(
                 Fault(
@@ -89,17 +98,8 @@ class SensorDivider(Signal):
                     remedy="one of these",
                 )
             )
-        if not fixed.value > 0:
-            faults.append(
-                Fault(
-                    "the fixed resistor is not positive.",
-                    asked=f"other = {fixed.value:g} Ω",
-                    remedy="a value such as 10k",
-                )
-            )
         if faults:
             raise SignalError.of("this signal", faults)
-        source = excitation if isinstance(excitation, Part | None) else Part(excitation)
         fill(self, (sensor, fixed, sensor_at, source, ends, unit, name, v_cc))
 
     @property
@@ -185,25 +185,21 @@ class DrivenSensor(Signal):
         current_tol: Quantity = 0.0,
         compliance: Quantity | None = None,
         *,
-        span: Sequence[float],
+        span: Iterable[Quantity],
         unit: str = "°C",
         name: str = "temperature",
     ) -> None:
-        amperes = read(current, unit="A", name="current")
         faults: list[Fault] = []
         ends = read_span(faults, span)
-        if not amperes > 0:
-            faults.append(
-                Fault(
-                    "the current of the source is not positive.",
-                    asked=f"current = {amperes:g} A",
-                    remedy="a value such as 1 mA",
-                )
-            )
+        faults = faults or sensor_faults(sensor, ends, unit)
+        amperes = read_positive(faults, "current", current, "A")
+        tol = read_share(faults, "current_tol", current_tol)
+        limit = None
+        if compliance is not None:
+            limit = read_positive(faults, "compliance", compliance, "V")
         if faults:
             raise SignalError.of("this signal", faults)
-        limit = None if compliance is None else read(compliance, unit="V", name="compliance")
-        fill(self, (sensor, amperes, parse_percent(current_tol), limit, ends, unit, name))
+        fill(self, (sensor, amperes, tol, limit, ends, unit, name))
 
     @property
     def parameters(self) -> dict[str, Limits]:
