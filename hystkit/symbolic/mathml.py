@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import re
+from collections.abc import Iterable
 from functools import lru_cache
 from typing import Any
 
@@ -12,6 +13,10 @@ from sympy.printing.mathml import MathMLPresentationPrinter
 from hystkit.symbolic.law import SwitchingLaw
 from hystkit.symbolic.printing import ordered_terms, width
 
+#: Media type of presentation MathML, in the output of a notebook.
+MIME = "application/mathml-presentation+xml"
+
+_NAMESPACE = "http://www.w3.org/1998/Math/MathML"
 _NUMBERED = re.compile(r"([A-Za-z]+?)(\d+)")
 _SIGNS = {"plus": "+", "minus": "\N{MINUS SIGN}"}
 _MINUS = "\N{MINUS SIGN}"
@@ -115,6 +120,11 @@ class LawMathPrinter(MathMLPresentationPrinter):  # type: ignore[misc]
         )
         return str(row.toxml())
 
+    def row(self, left: sp.Symbol, right: sp.Expr) -> str:
+        """Write ``left = right`` as a row of a table."""
+        pieces = (self._print(left), self._leaf("mo", "="), self._lines(right, _ROOM))
+        return str(self._inner("mtr", *(self._inner("mtd", each) for each in pieces)).toxml())
+
     def _leaf(self, tag: str, text: str) -> Any:
         node = self.dom.createElement(tag)
         node.appendChild(self.dom.createTextNode(text))
@@ -146,6 +156,25 @@ def law_mathml(law: SwitchingLaw) -> tuple[tuple[str, str], ...]:
         (left.name, f'<math displaystyle="true">{LawMathPrinter().equation(left, right)}</math>')
         for left, right in law.rows
     )
+
+
+def formula_mathml(rows: Iterable[tuple[sp.Symbol, sp.Expr]]) -> str:
+    """Write equations below each other in MathML.
+
+    Parameters
+    ----------
+    rows : iterable of tuple of sympy.Symbol and sympy.Expr
+        What is defined, and what it is.
+
+    Returns
+    -------
+    str
+        One ``math`` element with a row for each equation, aligned at the equals signs.
+    """
+    printer = LawMathPrinter()
+    table = "".join(printer.row(left, right) for left, right in rows)
+    table = f'<mtable displaystyle="true" columnalign="right center left">{table}</mtable>'
+    return f'<math xmlns="{_NAMESPACE}" display="block">{table}</math>'
 
 
 def symbol_mathml(name: str) -> str:

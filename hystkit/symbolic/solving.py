@@ -25,27 +25,25 @@ def solve_pair(
         Solutions as name to expression in V_upper, V_lower and the other symbols; empty where
         there is none.
     """
-    # Conductances enter node equations linearly: unknown resistors are sought as 1/R.
-    unknowns = [sp.Dummy(s.name) for s in (one, two)]
+    # A trip is linear-fractional in each conductance and linear in each voltage: what has to be
+    # zero is bilinear in the two unknowns, with resistors sought as 1/R.
+    unknowns = tuple(sp.Dummy(s.name) for s in (one, two))
     stand_in = {
         s: 1 / u if s.name.startswith("R") else u for s, u in zip((one, two), unknowns, strict=True)
     }
-    equations = [
-        sp.numer(sp.together((trip - symbol(wanted)).xreplace(stand_in)))
+    fractions = [
+        sp.fraction(sp.cancel(sp.together((trip - symbol(wanted)).xreplace(stand_in))))
         for trip, wanted in ((upper, "V_upper"), (lower, "V_lower"))
     ]
-    found = []
-    for solution in _solve(equations, unknowns):
-        values = [solution.get(u, sp.S.Zero) for u in unknowns]
-        if any(v == 0 or v.has(*unknowns) for v in values):
-            continue
-        found.append(
-            {
-                s.name: _signed(sp.factor(1 / v if s.name.startswith("R") else v))
-                for s, v in zip((one, two), values, strict=True)
-            }
-        )
-    return tuple(found)
+    above, below = zip(*fractions, strict=True)
+    return tuple(
+        {
+            s.name: _signed(_tidy(1 / value if s.name.startswith("R") else value))
+            for s, value in zip((one, two), pair, strict=True)
+        }
+        for pair in _bilinear(*above, *unknowns)
+        if 0 not in pair and not any(_vanishes(d, unknowns, pair) for d in below)
+    )
 
 
 def normalised(formula: sp.Expr, x: sp.Symbol) -> sp.Expr:
@@ -75,11 +73,49 @@ def _signed(formula: sp.Expr) -> sp.Expr:
     return sp.Mul(-number, -difference, *(f for f in factors if f is not difference))
 
 
-def _solve(equations: list[sp.Expr], unknowns: list[sp.Symbol]) -> list[dict[sp.Symbol, sp.Expr]]:
-    polynomials = [sp.Poly(e, *unknowns) for e in equations]
-    if all(p.total_degree() <= 1 for p in polynomials):
-        return [
-            dict(zip(unknowns, solution, strict=True))
-            for solution in sp.linsolve([p.as_expr() for p in polynomials], *unknowns)
-        ]
-    return list(sp.solve([p.as_expr() for p in polynomials], unknowns, dict=True))
+def _bilinear(
+    first: sp.Expr, second: sp.Expr, u: sp.Symbol, v: sp.Symbol
+) -> list[tuple[sp.Expr, sp.Expr]]:
+    """Solve a0 + a1 u + a2 v + a3 u v = 0 and the same with b for u and v."""
+    rows = [[sp.Poly(e, u, v).coeff_monomial(m) for m in (1, u, v, u * v)] for e in (first, second)]
+    (a0, a1, a2, a3), (b0, b1, b2, b3) = rows
+    # v from one equation in the other.
+    resultant = (b0 + b1 * u) * (a2 + a3 * u) - (b2 + b3 * u) * (a0 + a1 * u)
+    pairs = []
+    for root in _roots(sp.Poly(resultant, u)):
+        for c0, c1, c2, c3 in rows:
+            share = _tidy(c2 + c3 * root)
+            if share != 0:
+                pairs.append((root, _tidy(-(c0 + c1 * root) / share)))
+                break
+    return pairs
+
+
+def _roots(polynomial: sp.Poly) -> list[sp.Expr]:
+    """Solve a polynomial of the second degree at most; rational roots first."""
+    if polynomial.is_zero:
+        return []
+    _, factors = sp.factor_list(polynomial)
+    linear = [f for f, _ in factors if f.degree() == 1]
+    roots = [_tidy(-f.coeff_monomial(1) / f.LC()) for f in linear]
+    for f in (f for f, _ in factors if f.degree() == 2):
+        a, b, c = f.all_coeffs()
+        root = sp.sqrt(sp.factor(b**2 - 4 * a * c))
+        roots += [(-b + sign * root) / (2 * a) for sign in (1, -1)]
+    return roots
+
+
+def _vanishes(
+    formula: sp.Expr, unknowns: tuple[sp.Symbol, ...], pair: tuple[sp.Expr, sp.Expr]
+) -> bool:
+    """Whether a formula is zero at a solution: told at a place that no formula singles out."""
+    names = sorted((formula.free_symbols | pair[0].free_symbols | pair[1].free_symbols), key=str)
+    place = {s: sp.Rational(sp.prime(n + 7), sp.prime(2 * n + 5)) for n, s in enumerate(names)}
+    at = {u: value.xreplace(place) for u, value in zip(unknowns, pair, strict=True)}
+    return bool(abs(sp.N(formula.xreplace(at).xreplace(place), 30, chop=True)) < 1e-20)
+
+
+def _tidy(formula: sp.Expr) -> sp.Expr:
+    """Write as one factored fraction; a root is left where it stands."""
+    rooted = any(not power.exp.is_Integer for power in formula.atoms(sp.Pow))
+    return formula if rooted else sp.factor(formula)

@@ -4,6 +4,8 @@ from __future__ import annotations
 
 from functools import lru_cache
 
+import sympy as sp
+
 from hystkit.base.errors import Fault, InputError, UnknownNameError
 from hystkit.base.nearest import unknown_name_fault
 from hystkit.base.quantity import show_latex
@@ -49,7 +51,7 @@ def write(law: SwitchingLaw, variant: str = "formula", design: Design | None = N
     if variant not in VARIANTS:
         raise UnknownNameError.of("this LaTeX", [unknown_name_fault("variant", variant, VARIANTS)])
     if variant == "formula":
-        return aligned(_formula_lines(law))
+        return formula(law.rows)
     if variant == "derivation":
         return _align(law)
     if design is None or design.stage != law.stage:
@@ -76,8 +78,20 @@ def aligned(lines: list[str]) -> str:
 
 
 @lru_cache(maxsize=128)
-def _formula_lines(law: SwitchingLaw) -> list[str]:
-    return [line for left, right in law.rows for line in equation(left, right)]
+def formula(rows: tuple[tuple[sp.Symbol, sp.Expr], ...]) -> str:
+    r"""Write equations as one ``aligned`` block.
+
+    Parameters
+    ----------
+    rows : tuple of (sympy.Symbol, sympy.Expr)
+        What is defined, and what it is.
+
+    Returns
+    -------
+    str
+        For math mode.
+    """
+    return aligned([line for left, right in rows for line in equation(left, right)])
 
 
 def _align(law: SwitchingLaw) -> str:
