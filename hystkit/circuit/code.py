@@ -66,8 +66,8 @@ def _stage_code(stage: Stage) -> str:
 
 def _element_code(element: Element) -> str:
     if isinstance(element, Resistor):
-        return f"hk.Resistor({element.name!r}, {element.node_a!r}, {element.node_b!r})"
-    return f"hk.Wire({element.node_a!r}, {element.node_b!r})"
+        return f'hk.Resistor("{element.name}", "{element.node_a}", "{element.node_b}")'
+    return f'hk.Wire("{element.node_a}", "{element.node_b}")'
 
 
 def _parts_code(parts: Any, unit: str) -> str:
@@ -84,7 +84,7 @@ def _ohm_literal(value: float) -> str:
     """Give the letter code where it is exact, else the number."""
     text = code(value)
     try:
-        return repr(text) if read(text, unit="Ω") == value else repr(value)
+        return f'"{text}"' if read(text, unit="Ω") == value else repr(value)
     except QuantityError:
         return repr(value)
 

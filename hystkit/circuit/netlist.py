@@ -39,6 +39,13 @@ class Netlist:
         """Merged nodes whose voltage the circuit decides."""
         return self.nodes - FIXED_NODES.keys()
 
+    @property
+    def signal_at_pin(self) -> bool:
+        """Whether an input is the signal itself: wired, or joined to it by one resistor alone."""
+        pins = {self.merged["plus"], self.merged["minus"]}
+        alone = [touching[0] for pin in pins if len(touching := self.at(pin)) == 1]
+        return "signal" in pins or any("signal" in resistor.nodes for resistor in alone)
+
     def at(self, node: str) -> tuple[Resistor, ...]:
         """Resistors that touch a merged node."""
         return tuple(r for r in self.resistors if node in r.nodes)

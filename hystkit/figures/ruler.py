@@ -33,7 +33,6 @@ from hystkit.numeric.views import Levels
 
 #: A margin below this share of the supply is marked as small.
 SMALL_MARGIN = 0.02
-_BESIDE = 0.01
 _RAIL_CLEARANCE = 5.0
 _LEVELS = (("output_low", "V_OL"), ("output_high", "V_OH"), ("reference", "V_REF"))
 
@@ -70,15 +69,6 @@ def nearest_margin(levels: Levels) -> Margin | None:
         return None
     value, pin, limit = min(drawable)
     return Margin(value, pin, limit, value < SMALL_MARGIN * (levels.v_cc - levels.v_ee))
-
-
-def signal_at_pins(levels: Levels) -> bool:
-    """Whether an input pin sees the signal itself, so that the trips must lie in its range."""
-    if levels.pins is None:
-        return False
-    # A source resistance and the bias current put the pin a little beside the signal.
-    slack = _BESIDE * (levels.v_cc - levels.v_ee)
-    return levels.pins[0] <= levels.lower + slack and levels.upper - slack <= levels.pins[1]
 
 
 class RulerPicture(Picture[Levels]):
@@ -179,7 +169,7 @@ class RulerPicture(Picture[Levels]):
     def _move_witnesses(self, data: Levels) -> None:
         """Lead the trips down to the input range, or the pins where they do not see the trips."""
         rows, scale, theme = self._rows, self._plan.scale, self._theme
-        at_trips = signal_at_pins(data)
+        at_trips = data.signal_at_pin
         values = (data.lower, data.upper) if at_trips or data.pins is None else data.pins
         for trip, value in zip(("lower", "upper"), values, strict=True):
             x = scale.inside(value) if math.isfinite(value) else math.nan

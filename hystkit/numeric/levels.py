@@ -30,14 +30,14 @@ def levels(design: Design) -> Levels:
 
     Examples
     --------
-    >>> from hystkit.circuit.stage import Stage
-    >>> tank = Design(Stage("inverting"), {"R_T": "46k4", "R_B": "26k7", "R_F": "100k"}, supply=5.0)
-    >>> round(levels(tank).upper, 3)
+    >>> from hystkit.circuit.demo import header_tank
+    >>> round(levels(header_tank()).upper, 3)
     2.286
     """
     trips = trip_points(design)
     upper_interval, lower_interval = trip_intervals(design) or (None, None)
     at = _at_trips(design, trips)
+    at_pin = netlist(design.elements).signal_at_pin
     status = Status(int(trips.status))
     return Levels(
         v_ee=design.supply.low_rail,
@@ -52,7 +52,8 @@ def levels(design: Design) -> Levels:
         lower_interval=lower_interval,
         reference=design.values.get("V_REF"),
         common_mode=_common_mode(design),
-        pins=_pins(at, trips, upper_interval, lower_interval),
+        pins=_pins(at, at_pin, upper_interval, lower_interval),
+        signal_at_pin=at_pin,
         signal_span=_signal_span(design),
         signal=design.signal,
         ok=status is Status.OK,
@@ -78,10 +79,10 @@ def _at_trips(design: Design, trips: TripPoints) -> dict[str, dict[str, float]]:
 
 
 def _pins(
-    at: dict[str, dict[str, float]], trips: TripPoints, *intervals: Interval | None
+    at: dict[str, dict[str, float]], at_pin: bool, *intervals: Interval | None
 ) -> Interval | None:
     voltages = [nodes[pin] for nodes in at.values() for pin in ("plus", "minus")]
-    if any(trips.upper in nodes.values() for nodes in at.values()):
+    if at_pin:
         voltages += [end for interval in intervals if interval for end in interval]
     return (min(voltages), max(voltages)) if all(map(math.isfinite, voltages)) else None
 

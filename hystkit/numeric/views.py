@@ -37,6 +37,9 @@ class Levels:
     pins : tuple of float or None
         Lowest and highest voltage of both input pins, at both trips: what has to stay within
         `common_mode`. Over the tolerances where a pin is the signal itself. None without trips.
+    signal_at_pin : bool
+        Whether an input pin is the signal itself, wired or through one resistor only, so that
+        the trips have to lie in the common-mode range.
     signal_span : tuple of float or None
         Lowest and highest signal voltage, None without a signal description.
     signal : Signal or None
@@ -60,6 +63,7 @@ class Levels:
     reference: float | None = None
     common_mode: Interval | None = None
     pins: Interval | None = None
+    signal_at_pin: bool = False
     signal_span: Interval | None = None
     signal: Signal | None = None
     ok: bool = True

@@ -50,7 +50,11 @@ def law_script(law: SwitchingLaw) -> str:
     The named quantities of the law are computed first, as in the numeric layer, so that both
     round alike.
     """
-    entries = [f"upperState: {json.dumps(law.upper_state)}"]
+    at_pin = netlist(law.stage.elements).signal_at_pin
+    entries = [
+        f"upperState: {json.dumps(law.upper_state)}",
+        f"signalAtPin: {json.dumps(at_pin)}",
+    ]
     entries.append(f"trips: {_function(law.named, law)}")
     for state in (HIGH, LOW):
         entries.append(f"{state}: {_function(_voltages(law, state), law)}")

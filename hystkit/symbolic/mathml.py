@@ -2,7 +2,6 @@
 
 from __future__ import annotations
 
-import re
 from collections.abc import Iterable
 from functools import lru_cache
 from typing import Any
@@ -12,12 +11,12 @@ from sympy.printing.mathml import MathMLPresentationPrinter
 
 from hystkit.symbolic.law import SwitchingLaw
 from hystkit.symbolic.printing import ordered_terms, width
+from hystkit.symbolic.symbols import split_name
 
 #: Media type of presentation MathML, in the output of a notebook.
 MIME = "application/mathml-presentation+xml"
 
 _NAMESPACE = "http://www.w3.org/1998/Math/MathML"
-_NUMBERED = re.compile(r"([A-Za-z]+?)(\d+)")
 _SIGNS = {"plus": "+", "minus": "\N{MINUS SIGN}"}
 _MINUS = "\N{MINUS SIGN}"
 _TIMES = "\N{INVISIBLE TIMES}"
@@ -29,7 +28,7 @@ class LawMathPrinter(MathMLPresentationPrinter):  # type: ignore[misc]
     """MathML printer with the subscripts of the field and positive terms first."""
 
     def _print_Symbol(self, sym: sp.Symbol, style: str = "plain") -> Any:  # noqa: N802
-        base, subscript = _split(sym.name)
+        base, subscript = split_name(sym.name)
         letter = self._leaf("mi", base)
         if not subscript:
             return letter
@@ -196,13 +195,6 @@ def symbol_mathml(name: str) -> str:
     '<math><msub><mi>R</mi><mtext>F</mtext></msub></math>'
     """
     return f"<math>{LawMathPrinter()._print(sp.Symbol(name)).toxml()}</math>"
-
-
-def _split(name: str) -> tuple[str, str]:
-    base, _, subscript = name.partition("_")
-    if not subscript and (match := _NUMBERED.fullmatch(base)):
-        return match[1], match[2]
-    return base, subscript
 
 
 def _holds_fraction(factor: sp.Expr) -> bool:

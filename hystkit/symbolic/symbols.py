@@ -2,7 +2,6 @@
 
 from __future__ import annotations
 
-import re
 from functools import cache
 
 import sympy as sp
@@ -101,6 +100,23 @@ def meaning(name: str) -> tuple[str, str]:
     return (f"voltage at the node {name.partition('_')[2]}", "V")
 
 
+def split_name(name: str) -> tuple[str, str]:
+    """Split the name of a symbol into its letter and its subscript.
+
+    Parameters
+    ----------
+    name : str
+        Such as "R_PU" or "RF2".
+
+    Returns
+    -------
+    tuple of str
+        Such as ("R", "PU") or ("R", "F2"): two letters side by side would read as a product.
+    """
+    base, _, subscript = name.partition("_")
+    return base[:1], base[1:] + subscript
+
+
 @cache
 def latex_name(name: str) -> str:
     r"""Write a symbol in LaTeX, its subscript upright.
@@ -115,10 +131,7 @@ def latex_name(name: str) -> str:
     str
         Such as ``R_{\mathrm{PU}}``.
     """
-    base, _, subscript = name.partition("_")
-    if not subscript:
-        match = re.fullmatch(r"([A-Za-z]+?)(\d+)", base)
-        base, subscript = match.groups() if match else (base, "")
+    base, subscript = split_name(name)
     if not subscript:
         return base
     label = _LATEX_SUBSCRIPTS.get(subscript, rf"\mathrm{{{subscript}}}")

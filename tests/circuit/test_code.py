@@ -32,8 +32,8 @@ def test_it_reads_as_one_would_write_it() -> None:
     assert design.as_code().splitlines() == [
         "hk.Design(",
         '    hk.Stage("inverting", supply="single", reference="divider", output="open-collector"),',
-        """    parts={"R_T": '46k4', "R_B": hk.Part('26k7', tol=0.01), "R_F": 14285.714285714286,"""
-        """ "R_PU": '4k7'},""",
+        """    parts={"R_T": "46k4", "R_B": hk.Part("26k7", tol=0.01), "R_F": 14285.714285714286,"""
+        """ "R_PU": "4k7"},""",
         "    supply=hk.Supply(5.0, tol=0.02),",
         "    device=hk.Device(drop_low=0.2),",
         '    levels={"V_PU": 12.0},',

@@ -40,7 +40,11 @@ def levels(lower: float, upper: float, **changes: Any) -> Levels:
     ends = [*(values.get("lower_interval") or ()), *(values.get("upper_interval") or ())]
     ends += [lower, upper]
     # As in an inverting stage, whose signal is wired to a pin.
-    values.setdefault("pins", (min(ends), max(ends)) if upper >= lower else None)
+    if "pins" not in values:
+        values |= {
+            "pins": (min(ends), max(ends)) if upper >= lower else None,
+            "signal_at_pin": True,
+        }
     return Levels(upper=upper, lower=lower, width=width, middle=middle, **values)
 
 

@@ -30,7 +30,7 @@ from hystkit.figures.lettering import (
 from hystkit.figures.placement import Want, place, thinned
 from hystkit.figures.ruler import Margin, nearest_margin
 from hystkit.figures.ruler_plan import NO_TRIPS, finite, plan_for, switches
-from hystkit.numeric.views import Levels
+from hystkit.numeric.views import Interval, Levels
 
 #: Below this width names and numbers stand above their rows, not beside them [px].
 SLIM = 560.0
@@ -329,6 +329,16 @@ class _Ruler:
             if span is not None and len(finite(*span)) == 2:
                 self.pen.box(f"{trip} over", px(span[0]), rows.trip_markers, px(span[1]), rows.axis)
 
+    def _witnesses(self, pins: Interval) -> None:
+        """Lead the trips down to the input range, or the pins where they do not see the trips."""
+        levels, rows = self.levels, self.rows
+        at_trips = levels.signal_at_pin
+        ends = (levels.lower, levels.upper) if at_trips else pins
+        top = rows.common_mode - 10 if self.slim else rows.below
+        for trip, volts in zip(("lower", "upper"), ends, strict=True):
+            x = self.scale.px(volts)
+            self.pen.line(f"{trip if at_trips else 'pin'} witness", x, top, x, rows.margin + 8)
+
     def _trips(self) -> None:
         if not self.switches:
             message(self.pen, self.plan.message or NO_TRIPS, self.rows.trip_names)
@@ -337,9 +347,8 @@ class _Ruler:
         for trip in ("lower", "upper"):
             x = px(getattr(levels, trip))
             self.pen.line(f"{trip} stem", x, rows.axis, x, rows.trip_markers)
-            if self.plan.common_mode is not None:
-                top = rows.common_mode - 10 if self.slim else rows.below
-                self.pen.line(f"{trip} witness", x, top, x, rows.margin + 8)
+        if self.plan.common_mode is not None and levels.pins is not None:
+            self._witnesses(levels.pins)
         trip_tags(
             self.pen,
             levels,

@@ -154,7 +154,8 @@ function evaluate(form, state) {
   return {
     form, values, signal, upper, lower, width: upper - lower, middle: (upper + lower) / 2,
     upper_interval: intervals[0], lower_interval: intervals[1], v_ee: vEe, v_cc: vCc,
-    output_high: high[0], output_low: low[0], pins: pinRange([high, low], upper, intervals),
+    output_high: high[0], output_low: low[0], pins: pinRange([high, low], intervals),
+    signal_at_pin: LAW.signalAtPin,
     reference: values.V_REF ?? null,
     common_mode: from === null || upTo === null ? null : [vEe + from, vCc - upTo],
     signal_span: span && span.sort((a, b) => a - b),
@@ -163,9 +164,9 @@ function evaluate(form, state) {
 }
 
 /** What the input pins see at both trips; over the tolerances where a pin is the signal itself. */
-function pinRange(states, upper, intervals) {
+function pinRange(states, intervals) {
   const seen = states.flatMap((nodes) => nodes.slice(1));
-  if (states.some((nodes) => nodes.includes(upper))) seen.push(...intervals.flatMap((i) => i || []));
+  if (LAW.signalAtPin) seen.push(...intervals.flatMap((i) => i || []));
   return seen.every(Number.isFinite) ? [Math.min(...seen), Math.max(...seen)] : null;
 }
 

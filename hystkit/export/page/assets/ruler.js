@@ -253,6 +253,18 @@ class Ruler {
     }
   }
 
+  /** Lead the trips down to the input range, or the pins where they do not see the trips. */
+  drawWitnesses() {
+    const { pen, levels, rows, scale } = this;
+    const atTrips = levels.signal_at_pin;
+    const ends = atTrips ? [levels.lower, levels.upper] : levels.pins;
+    const top = this.slim ? rows.commonMode - 10 : rows.below;
+    ["lower", "upper"].forEach((trip, k) => {
+      const x = scale.px(ends[k]);
+      pen.line(`${atTrips ? trip : "pin"} witness`, x, top, x, rows.margin + 8);
+    });
+  }
+
   drawTrips() {
     const { pen, levels, rows, scale } = this;
     if (!this.switches) {
@@ -262,11 +274,8 @@ class Ruler {
     for (const trip of ["lower", "upper"]) {
       const x = scale.px(levels[trip]);
       pen.line(`${trip} stem`, x, rows.axis, x, rows.tripMarkers);
-      if (this.reach) {
-        const top = this.slim ? rows.commonMode - 10 : rows.below;
-        pen.line(`${trip} witness`, x, top, x, rows.margin + 8);
-      }
     }
+    if (this.reach && levels.pins) this.drawWitnesses();
     const places = this.tripPlaces();
     tripTags(pen, levels, places, rows.tripNames, rows.tripMarkers, this.walls);
     this.drawWidth(...places);
