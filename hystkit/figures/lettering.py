@@ -9,6 +9,7 @@ from typing import Any
 import numpy as np
 from matplotlib.backends.backend_agg import RendererAgg
 
+from hystkit.base.digits import trip_digits as trip_digits
 from hystkit.base.quantity import show
 from hystkit.circuit.signals import Signal
 from hystkit.figures.theme import PX_PER_INCH, LetterSize, letters
@@ -74,14 +75,6 @@ def written_span(low: float, high: float, unit: str = "V") -> str:
 def _short(value: float) -> str:
     """Return a number with four digits; what is too small beside its unit is zero."""
     return f"{value if abs(value) >= 5e-4 else 0.0:.4g}".replace("-", MINUS)
-
-
-def trip_digits(value: float, width: float) -> int:
-    """Return with how many digits a trip is written so that the width stays visible in it."""
-    if not (value and width and math.isfinite(value) and math.isfinite(width)):
-        return 4
-    wanted = math.floor(math.log10(abs(value))) - math.floor(math.log10(abs(width))) + 2
-    return min(max(wanted, 4), 7)
 
 
 def short_unit(signal: Signal) -> str:

@@ -236,6 +236,10 @@ class Picture(ABC, Generic[T]):
         path.write_bytes(self.png() if ending == ".png" else self._written(ending))
         return path
 
+    def __repr__(self) -> str:
+        """Say what it shows, for readers of the plain text of a notebook."""
+        return f"<{type(self).__name__}: {self._alt or 'nothing drawn yet'}>"
+
     def _repr_png_(self) -> tuple[bytes, dict[str, Any]]:
         """Show the picture in a notebook at its own size."""
         return self.png(), {"width": self.width_px, "height": self.height_px, "alt": self.alt}

@@ -1,8 +1,19 @@
 """Live panels for notebooks: controls that propose a design, results that follow it."""
 
 from hystkit.panels.base import Panel
+from hystkit.panels.findings_panel import FindingsPanel
+from hystkit.panels.sizing import SizingPanel
 from hystkit.panels.snapshot import Snapshot
+from hystkit.panels.spread import SpreadPanel
 from hystkit.panels.standard import StagePanel
 from hystkit.panels.trip import TripPanel
 
-__all__ = ["Panel", "Snapshot", "StagePanel", "TripPanel"]
+__all__ = [
+    "FindingsPanel",
+    "Panel",
+    "SizingPanel",
+    "Snapshot",
+    "SpreadPanel",
+    "StagePanel",
+    "TripPanel",
+]

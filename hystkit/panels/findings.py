@@ -1,146 +1,129 @@
-"""What stands out at the trip points, from simple comparisons of what is on the volt axis."""
+"""Findings of a review as HTML: what needs attention in one line, or all of them in a table."""
 
 from __future__ import annotations
 
 import html
 import math
-from collections.abc import Iterator
-from dataclasses import dataclass
 
 from hystkit.base.quantity import show
-from hystkit.circuit.design import Design
-from hystkit.figures.ruler import signal_at_pins
-from hystkit.numeric.views import Interval, Levels
+from hystkit.review.finding import SIGNS, Finding, Review
 
-#: Sign of each kind, so that colour is not alone in telling them apart.
-SIGNS = {"warning": "!", "note": "–", "passed": "✓"}
+#: Severities that are told in words under the ruler; of the others there is only the number.
+TOLD = ("fault", "warning")
 
 
-@dataclass(frozen=True)
-class Finding:
-    """One line on a design.
-
-    Attributes
-    ----------
-    kind : {"warning", "note", "passed"}
-        How much it matters.
-    text : str
-        Plain text.
-    """
-
-    kind: str
-    text: str
-
-
-def findings(design: Design, levels: Levels) -> tuple[Finding, ...]:
-    """Compare the trip points with what they have to fit into.
+def line(found: Review) -> str:
+    """Write a review in one line.
 
     Parameters
     ----------
-    design : Design
-        What is judged.
-    levels : Levels
-        Of this design.
-
-    Returns
-    -------
-    tuple of Finding
-        Warnings first, then notes, then what was found in order.
-    """
-    if not levels.ok:
-        return (Finding("warning", f"no trip points: {levels.message}"),)
-    found = [
-        *_common_mode(levels),
-        *_rails(design, levels),
-        *_span(levels),
-        *_tolerances(design, levels),
-    ]
-    return tuple(sorted(found, key=lambda f: list(SIGNS).index(f.kind)))
-
-
-def as_html(found: tuple[Finding, ...]) -> str:
-    """Write findings in one line of HTML.
-
-    Parameters
-    ----------
-    found : tuple of Finding
-        What to show.
+    found : Review
+        Of a design.
 
     Returns
     -------
     str
-        Everything escaped.
+        HTML, everything escaped: faults and warnings with their text, how many checks pass, and
+        how many notes there are.
     """
-    return "".join(
-        f'<span class="hystkit-finding hystkit-{f.kind}-line">'
-        f'<b aria-hidden="true">{SIGNS[f.kind]}</b> '
-        f'<span class="hystkit-kind">{f.kind}: </span>{html.escape(f.text)}</span> '
+    told = [_piece(f.severity, f.name, f.text) for f in found if f.severity in TOLD]
+    passes, notes = found.count("pass"), found.count("note")
+    if passes:
+        told.append(_piece("pass", "", f"{passes} check{'s pass' if passes > 1 else ' passes'}"))
+    if notes:
+        told.append(_piece("note", "", f"{notes} note{'s' * (notes > 1)}"))
+    return " ".join(told)
+
+
+def remarks(found: Review) -> tuple[str, ...]:
+    """Write what needs attention, as sentences for a plain output.
+
+    Parameters
+    ----------
+    found : Review
+        Of a design.
+
+    Returns
+    -------
+    tuple of str
+        One for each fault and warning.
+    """
+    return tuple(_sentence(f) for f in found if f.severity in TOLD)
+
+
+def all_remarks(found: Review) -> tuple[str, ...]:
+    """Write all findings, as sentences for a plain output.
+
+    Parameters
+    ----------
+    found : Review
+        Of a design.
+
+    Returns
+    -------
+    tuple of str
+        The worst first.
+    """
+    return tuple(_sentence(f) for f in found)
+
+
+def findings_table(found: Review) -> str:
+    """Write a review as an HTML table.
+
+    Parameters
+    ----------
+    found : Review
+        Of a design.
+
+    Returns
+    -------
+    str
+        Everything escaped; a row for each finding, the worst first.
+    """
+    heading = "".join(
+        f'<th scope="col">{name}</th>' for name in ("check", "found", "margin", "to change")
+    )
+    rows = "".join(
+        f'<tr class="hystkit-{f.severity}-line"><th scope="row">{_sign(f.severity)} '
+        f"{html.escape(f.name)}</th><td>{html.escape(f.text)}</td>"
+        f"<td>{html.escape(margin(f))}</td><td>{html.escape(f.remedy)}</td></tr>"
         for f in found
+    )
+    return f"<table><thead><tr>{heading}</tr></thead><tbody>{rows}</tbody></table>"
+
+
+def margin(finding: Finding) -> str:
+    """Write the margin of a finding.
+
+    Parameters
+    ----------
+    finding : Finding
+        Of a review.
+
+    Returns
+    -------
+    str
+        With its unit; empty where there is none.
+    """
+    return "" if math.isnan(finding.margin) else show(finding.margin, finding.unit, 3)
+
+
+def _piece(severity: str, name: str, text: str) -> str:
+    said = f"<b>{html.escape(name)}:</b> " if name else ""
+    return (
+        f'<span class="hystkit-finding hystkit-{severity}-line">{_sign(severity)} '
+        f"{said}{html.escape(text)}</span>"
     )
 
 
-def _common_mode(levels: Levels) -> Iterator[Finding]:
-    if levels.common_mode is None or levels.pins is None:
-        yield Finding("note", "common-mode range of the device not stated")
-        return
-    (low, high), (least, most) = levels.common_mode, levels.pins
-    allowed = f"the common-mode range {_range(levels.common_mode)}"
-    if least < low:
-        yield Finding("warning", f"inputs at {_volts(least)} at a trip, below {allowed}")
-    if most > high:
-        yield Finding("warning", f"inputs at {_volts(most)} at a trip, above {allowed}")
-    if low <= least and most <= high:
-        left = show(min(least - low, high - most), "V", 3)
-        yield Finding("passed", f"inputs in the common-mode range, {left} left")
+def _sign(severity: str) -> str:
+    """Write the sign of a severity, and its name for those who do not see it."""
+    return (
+        f'<b aria-hidden="true">{SIGNS[severity]}</b><span class="hystkit-kind">{severity}: </span>'
+    )
 
 
-def _rails(design: Design, levels: Levels) -> Iterator[Finding]:
-    """Find trips beyond the rails; they matter where a pin has to go there with the signal."""
-    kind = "warning" if signal_at_pins(levels) else "note"
-    beyond = False
-    for name, trip in (("upper", levels.upper), ("lower", levels.lower)):
-        if trip > levels.v_cc:
-            beyond = True
-            yield Finding(kind, f"{name} trip {show(trip, 'V')} above V_CC {_volts(levels.v_cc)}")
-        elif trip < levels.v_ee:
-            rail = "V_EE " + _volts(levels.v_ee) if design.supply.split else "ground"
-            beyond = True
-            yield Finding(kind, f"{name} trip {show(trip, 'V')} below {rail}")
-    if not beyond:
-        yield Finding("passed", "trips between the rails")
-
-
-def _span(levels: Levels) -> Iterator[Finding]:
-    span = levels.signal_span
-    if span is None or not all(math.isfinite(end) for end in span):
-        return
-    outside = False
-    for name, trip in (("upper", levels.upper), ("lower", levels.lower)):
-        if not span[0] <= trip <= span[1]:
-            outside = True
-            yield Finding(
-                "warning",
-                f"{name} trip {show(trip, 'V')} outside the signal span {_range(span)}: "
-                "the signal never gets there",
-            )
-    if not outside:
-        yield Finding("passed", "trips in the signal span")
-
-
-def _tolerances(design: Design, levels: Levels) -> Iterator[Finding]:
-    upper, lower = levels.upper_interval, levels.lower_interval
-    stated = [*design.parts.values(), *design.levels.values()]
-    if upper is None or lower is None:
-        if design.supply.tol or any(part.tol for part in stated):
-            yield Finding("note", "more tolerances than corners can be computed for")
-        return
-    if not all(math.isfinite(end) for end in (*upper, *lower)):
-        yield Finding("warning", "over the tolerances there are values that do not switch")
-
-
-def _range(interval: Interval) -> str:
-    return f"{_volts(interval[0])} to {_volts(interval[1])}"
-
-
-def _volts(value: float) -> str:
-    return show(value, "V")
+def _sentence(finding: Finding) -> str:
+    sign = SIGNS[finding.severity]
+    remedy = f" ({finding.remedy})" if finding.remedy else ""
+    return f"{sign} {finding.severity}, {finding.name}: {finding.text}{remedy}"

@@ -87,7 +87,8 @@ CSS = """
 .hystkit-panel .hystkit-kind { position: absolute; width: 1px; height: 1px; overflow: hidden;
   clip-path: inset(50%); }
 .hystkit-panel .hystkit-warning-line { color: var(--hk-care); font-weight: 600; }
-.hystkit-panel .hystkit-passed-line b { color: var(--hk-good); }
+.hystkit-panel .hystkit-fault-line { color: var(--hk-bad); font-weight: 600; }
+.hystkit-panel .hystkit-pass-line b { color: var(--hk-good); }
 .hystkit-panel .hystkit-math { overflow-x: auto; overflow-y: hidden; padding: 4px 0; }
 .hystkit-panel .hystkit-math mjx-container[display="true"] {
   text-align: left; margin: 0.3em 0; min-width: 0;
@@ -105,6 +106,22 @@ CSS = """
 .hystkit-panel .hystkit-table th:first-child { padding-left: 0; text-align: left; }
 .hystkit-panel .hystkit-table tr:last-child > * { border-bottom: 0; }
 .hystkit-panel .hystkit-table .widget-html-content { overflow-x: auto; }
+.hystkit-panel .hystkit-wrapped table { width: 100%; }
+.hystkit-panel .hystkit-wrapped th, .hystkit-panel .hystkit-wrapped td {
+  white-space: normal; text-align: left; padding-left: 14px; vertical-align: top;
+  font-weight: normal;
+}
+.hystkit-panel .hystkit-wrapped th:first-child, .hystkit-panel .hystkit-wrapped td:nth-child(3) {
+  white-space: nowrap; padding-left: 0;
+}
+.hystkit-panel .hystkit-wrapped td:nth-child(3) { text-align: right; padding-left: 14px; }
+.hystkit-panel .hystkit-wrapped .hystkit-fault-line th { color: var(--hk-bad); font-weight: 600; }
+.hystkit-panel .hystkit-wrapped .hystkit-warning-line th {
+  color: var(--hk-care); font-weight: 600;
+}
+.hystkit-panel .hystkit-wrapped tr > td { color: var(--hk-text); }
+.hystkit-panel .hystkit-candidate { padding: 3px 0; overflow: visible; }
+.hystkit-panel .hystkit-candidate + .hystkit-candidate { border-top: 1px solid var(--hk-line); }
 .hystkit-panel .hystkit-error:has(.widget-html-content:empty) { display: none; }
 .hystkit-panel .hystkit-error .widget-html-content:not(:empty) {
   border: 1px solid var(--hk-bad); border-radius: 6px; padding: 8px 12px; color: var(--hk-bad);

@@ -26,7 +26,9 @@ from hystkit.panels.levels import LevelsSection
 from hystkit.panels.parts import PartsSection
 from hystkit.panels.snapshot import Snapshot, Still
 from hystkit.panels.view import PictureView
-from hystkit.symbolic.law import derive
+from hystkit.review.finding import Review
+from hystkit.review.review import review
+from hystkit.symbolic.law import SwitchingLaw, derive
 
 #: Room that a card takes beside its content, and that stands between two cards [px].
 _FRAME, _GAP = 26, 10
@@ -47,10 +49,13 @@ class StagePanel(Panel):
         What is shown; can be set, observed and linked.
     result : TripPoints
         Its trip points.
+    reviewed : Review
+        Findings on it.
     error : str
         What went wrong in the panel itself at the last change, empty where nothing did.
     """
 
+    reviewed = Review(())
     result = Instance(TripPoints, allow_none=True, read_only=True)
 
     @abstractmethod
@@ -60,6 +65,32 @@ class StagePanel(Panel):
     @abstractmethod
     def _draw(self, design: Design) -> None:
         """Show the own figure, after `_evaluate`."""
+
+    def _below(self, width_px: int) -> Sequence[PictureView[Any]]:
+        """Make views of further pictures, which stand below the figure; none by default."""
+        return ()
+
+    def _own_cards(self) -> Sequence[Any]:
+        """Make cards that stand between the findings and the figure; none by default."""
+        return ()
+
+    def _review(self, design: Design) -> Review:
+        """Review a design."""
+        return review(design)
+
+    def _show_review(self, found: Review) -> None:
+        """Show what was found."""
+        self.findings.show(found)
+
+    def _remarks(self) -> tuple[str, ...]:
+        """Give the findings that a plain output tells."""
+        return findings.remarks(self.reviewed)
+
+    def _tabulated(
+        self, found: Levels, trips: TripPoints, law: SwitchingLaw
+    ) -> tuple[table.Rows, str]:
+        """Write the rows of the table, and LaTeX to copy."""
+        return table.trip_rows(found, trips), law.latex("table", design=self.design)
 
     def _evaluate(self, design: Design) -> Levels:
         """Evaluate the levels, and with them whatever the own figure shows."""
@@ -84,6 +115,7 @@ class StagePanel(Panel):
         ruler, figure, schematic = _widths(self._room)
         self.ruler = PictureView(desk, RulerPicture, ruler)
         self.figure = self._figure(figure)
+        self.below = tuple(self._below(figure))
         self.schematic = PictureView(desk, SchematicPicture, schematic)
         self.findings = FindingsLine(desk)
         self.law = LawView(desk)
@@ -91,7 +123,8 @@ class StagePanel(Panel):
         return [
             cards(desk, (self.ruler.widget, "1 1 100%")),
             self.findings.widget,
-            cards(desk, (self.figure.widget, _FIGURE), (self.schematic.widget, _SCHEMATIC)),
+            *self._own_cards(),
+            cards(desk, (self._stacked(), _FIGURE), (self.schematic.widget, _SCHEMATIC)),
             # The table stands right of the law, and above it where there is room for one only.
             flowing(desk, [self.trips.widget, self.law.widget], "row-reverse wrap"),
         ]
@@ -107,22 +140,36 @@ class StagePanel(Panel):
             self._draw(design)
         with guarded("drawing the schematic"):
             self.schematic.show(design)
-        with guarded("comparing levels"):
-            self.findings.show(findings.findings(design, found))
+        with guarded("reviewing the design"):
+            self.reviewed = self._review(design)
+            self._show_review(self.reviewed)
         law = derive(design).for_design(design)
         with guarded("writing the table"):
-            self.trips.show(table.trip_rows(found, trips), law.latex("table", design=design))
+            self.trips.show(*self._tabulated(found, trips, law))
         with guarded("writing the law"):
             self.law.show(law, design)
 
     def _fit(self, room_px: int) -> None:
-        for view, width in zip(self._views, _widths(room_px), strict=True):
+        ruler, figure, schematic = _widths(room_px)
+        widths = (ruler, figure, *(figure for _ in self.below), schematic)
+        for view, width in zip(self._views, widths, strict=True):
             with self._desk.guarded("drawing a picture"):
                 view.fit(width)
 
     @property
     def _views(self) -> tuple[PictureView[Any], ...]:
-        return (self.ruler, self.figure, self.schematic)
+        return (self.ruler, self.figure, *self.below, self.schematic)
+
+    def _stacked(self) -> Any:
+        """Stack the pictures of the figure's card."""
+        if not self.below:
+            return self.figure.widget
+        return self._desk.kit.make(
+            widgets.VBox,
+            "stack",
+            children=[self.figure.widget, *(view.widget for view in self.below)],
+            layout={"width": "100%", "margin": "0", "grid_gap": "10px"},
+        )
 
     def snapshot(self) -> Snapshot:
         """Return what is shown as a plain output, for pages without a kernel.
@@ -141,7 +188,7 @@ class StagePanel(Panel):
             stills=tuple(still for still in stills if still.png),
             rows=self.trips.rows,
             latex=self.law.latex,
-            remarks=tuple(f.text for f in self.findings.found if f.kind == "warning"),
+            remarks=self._remarks(),
         )
 
 
@@ -155,19 +202,17 @@ class FindingsLine:
     """
 
     def __init__(self, desk: Desk) -> None:
-        self.found: tuple[findings.Finding, ...] = ()
         self.widget: Any = desk.kit.label("", "findings")
 
-    def show(self, found: tuple[findings.Finding, ...]) -> None:
+    def show(self, found: Review) -> None:
         """Show findings.
 
         Parameters
         ----------
-        found : tuple of Finding
-            In the order in which they are read.
+        found : Review
+            Of the design that is shown.
         """
-        self.found = found
-        self.widget.value = findings.as_html(found)
+        self.widget.value = findings.line(found)
 
 
 class TripTable:

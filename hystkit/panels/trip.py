@@ -2,17 +2,10 @@
 
 from __future__ import annotations
 
-from typing import Any
-
-from hystkit.circuit.design import Design
-from hystkit.figures.loop import LoopPicture
-from hystkit.numeric.loop import loop
-from hystkit.numeric.views import Levels
-from hystkit.panels.standard import StagePanel
-from hystkit.panels.view import PictureView
+from hystkit.panels.loop_figure import LoopFigure
 
 
-class TripPanel(StagePanel):
+class TripPanel(LoopFigure):
     """Choose a form, move parts, and see trip points, loop, schematic and law follow.
 
     Parameters
@@ -38,14 +31,3 @@ class TripPanel(StagePanel):
     0.358 V
     >>> panel.close()
     """
-
-    def _figure(self, width_px: int) -> PictureView[Any]:
-        self.loop = PictureView(self._desk, LoopPicture, width_px)
-        return self.loop
-
-    def _evaluate(self, design: Design) -> Levels:
-        self._shown = loop(design)
-        return self._shown.levels
-
-    def _draw(self, design: Design) -> None:
-        self.loop.show(self._shown)

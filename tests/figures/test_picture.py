@@ -281,6 +281,7 @@ def test_a_notebook_shows_it_at_its_own_size_with_its_text() -> None:
     data, about = picture._repr_png_()
     assert pixels(data).shape[1] == 2 * about["width"]
     assert about["alt"] == picture.alt
+    assert repr(picture) == f"<RulerPicture: {picture.alt}>"
 
 
 @pytest.mark.parametrize("shape", [(1, 1, 4), (3, 5, 4), (40, 300, 4)])

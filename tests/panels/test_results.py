@@ -1,4 +1,4 @@
-"""Table, findings, steps of a slider and room for pictures."""
+"""Table, steps of a slider and room for pictures."""
 
 from __future__ import annotations
 
@@ -11,21 +11,9 @@ from hystkit.base import quantity
 from hystkit.circuit.demo import header_tank
 from hystkit.circuit.preferred import nearest
 from hystkit.panels import table
-from hystkit.panels.findings import findings
 from hystkit.panels.parts import SERIES, Steps
 from hystkit.panels.texts import amount, ohms, percent
-from tests.panels.conftest import MakePanel
-from tests.panels.front import design_of, send
-
-
-def kinds(design: hk.Design) -> dict[str, str]:
-    return {found.text: found.kind for found in findings(design, hk.levels(design))}
-
-
-def said(design: hk.Design, part: str) -> str:
-    """Kind of the only finding with this text in it."""
-    (kind,) = [kind for text, kind in kinds(design).items() if part in text]
-    return kind
+from tests.panels.front import send
 
 
 @given(st.floats(1e-3, 1e9, allow_nan=False))
@@ -73,63 +61,6 @@ def test_the_table_has_the_columns_that_apply() -> None:
     plain = table.trip_rows(hk.levels(bare), hk.trip_points(bare))
     assert plain[0] == ("", "nominal")
     assert all(len(row) == 2 for row in plain)
-
-
-def test_a_sound_design_passes() -> None:
-    assert set(kinds(header_tank()).values()) == {"passed"}
-
-
-def test_a_trip_outside_the_common_mode_range_is_found() -> None:
-    tank = header_tank()
-    assert said(tank.with_device(common_mode_high=3.0), "above the common-mode") == "warning"
-    assert said(tank.with_device(common_mode_low=1.6), "below the common-mode") == "warning"
-    assert said(tank.with_device(common_mode_high=None), "not stated") == "note"
-
-
-def test_the_interval_counts_where_the_signal_is_at_the_pin() -> None:
-    tank = header_tank()
-    found = hk.levels(tank)
-    assert found.upper_interval is not None
-    between = (found.upper + found.upper_interval[1]) / 2
-    assert said(tank.with_device(common_mode_high=5 - between), "above the common") == "warning"
-
-
-def test_the_pins_count_where_the_signal_is_divided() -> None:
-    stage = hk.Stage("non-inverting", reference="source")
-    cut_out = hk.Design(
-        stage,
-        {"R_I": "220k", "R_G": "57k6", "R_F": "909k"},
-        supply=5,
-        levels={"V_REF": 2.5},
-        device=hk.Device(common_mode_low=0, common_mode_high=1.5),
-        signal=hk.signals.Linear(per_unit=1, span=(10, 15), unit="V", name="battery"),
-    )
-    found = hk.levels(cut_out)
-    assert found.upper > 12
-    assert said(cut_out, "inputs in the common-mode range, 1 V left") == "passed"
-    assert said(cut_out, "upper trip") == "note"
-
-
-def test_a_trip_beyond_a_rail_or_the_span_is_found() -> None:
-    stage = hk.Stage("inverting", reference="source")
-    beyond = hk.Design(stage, {"R_R": "1k", "R_F": "1k"}, supply=5, levels={"V_REF": 7})
-    assert said(beyond, "upper trip 6 V above V_CC 5 V") == "warning"
-    below = design_of(hk.Stage("inverting", supply="split", reference="source")).with_levels(
-        V_REF=-20
-    )
-    assert said(below, "lower trip") == "warning"
-    narrow = hk.signals.Linear(per_unit=1, span=(0, 2), unit="V")
-    assert said(header_tank().with_signal(narrow), "outside the signal span") == "warning"
-
-
-def test_warnings_come_first_with_their_sign(make: MakePanel) -> None:
-    panel = make(header_tank().with_device(common_mode_high=3))
-    line = panel.findings.widget.value
-    assert line.index("above the common-mode") < line.index("trips between the rails")
-    assert "hystkit-warning-line" in line
-    assert ">!</b>" in line
-    panel.set(common_mode_high=1.5)
-    assert "above" not in panel.findings.widget.value
 
 
 def test_pictures_follow_the_room_of_the_page(panel: hk.panels.TripPanel) -> None:

@@ -1,0 +1,71 @@
+"""The spread as a table: nominal, exact limits, root sum square, measurand and yield."""
+
+from __future__ import annotations
+
+import math
+
+from hystkit.analyses.spread.measurand import MeasurandSpread
+from hystkit.base.quantity import show
+from hystkit.circuit.signals import Signal
+from hystkit.figures.spread import WindowedSpread
+from hystkit.numeric.trips import TripPoints
+from hystkit.numeric.views import Interval
+from hystkit.panels.table import Rows
+
+_KINDS = ("upper", "lower", "width", "middle")
+
+
+def spread_rows(shown: WindowedSpread, trips: TripPoints) -> Rows:
+    """Write a spread as rows of text, the first of them the heading.
+
+    Parameters
+    ----------
+    shown : WindowedSpread
+        Limits and windows.
+    trips : TripPoints
+        Nominal, of the same design.
+
+    Returns
+    -------
+    list of tuple of str
+        A column for the measurand stands only with a signal, a row for the yield only with a
+        window.
+    """
+    spread, signal = shown.spread, trips.signal
+    sigmas = f"± {spread.plan.sigmas:g} sigma"
+    heading = ["", "nominal", "exact limits", sigmas]
+    heading += [_column(signal)] if signal is not None else []
+    rows: Rows = [tuple(heading)]
+    measured = {} if spread.measurand is None else _measured(spread.measurand)
+    for kind in _KINDS:
+        row = [kind, show(float(getattr(trips, kind)), "V")]
+        row += [_interval(spread.extremes[kind], "V"), show(spread.rss[kind], "V", 3)]
+        row += [measured.get(kind, "")] if signal is not None else []
+        rows.append(tuple(row))
+    share = shown.share
+    if share is not None:
+        row = ["yield", _percent(share.value), f"{_percent(share.low)} to {_percent(share.high)}"]
+        row += [f"at {100 * share.confidence:g} %"] + [""] * (signal is not None)
+        rows.append(tuple(row))
+    return rows
+
+
+def _column(signal: Signal) -> str:
+    return f"{signal.name} / {signal.unit}" if signal.unit else signal.name
+
+
+def _measured(found: MeasurandSpread) -> dict[str, str]:
+    other = "upper" if found.low_is == "lower" else "lower"
+    kinds = {"low": found.low_is, "high": other, "width": "width"}
+    return {kinds[end]: _interval(pair, "") for end, pair in found.extremes.items()}
+
+
+def _interval(ends: Interval, unit: str) -> str:
+    if math.isnan(ends[0]):
+        return show(ends[0], unit)
+    return f"{show(ends[0], unit)} to {show(ends[1], unit)}"
+
+
+def _percent(share: float) -> str:
+    text = f"{100 * share:.4g}"
+    return f"{text if share == 1 or text != '100' else '> 99.99'} %"
