@@ -1,4 +1,4 @@
-"""The main job without a notebook: ``python -m hystkit`` or ``python -m hystkit DESIGN.json``."""
+"""The main job without a notebook, and a notebook without a kernel, from the command line."""
 
 from __future__ import annotations
 
@@ -6,7 +6,7 @@ import argparse
 import io
 import os
 import sys
-from collections.abc import Iterator, Sequence
+from collections.abc import Iterator, Mapping, Sequence
 from pathlib import Path
 from typing import TYPE_CHECKING
 
@@ -27,10 +27,25 @@ examples:
   python -m hystkit                             the demo design, a header tank
   python -m hystkit vent.json                   a design saved with hystkit.save
   python -m hystkit vent.json --out reports/vent
+  python -m hystkit publish vent.ipynb          a notebook, for a wiki; publish --help
 
 The folder holds design.json (a start for a design of your own), numbers.json,
-law.tex, and the ruler, the switching loop and the schematic as PNG and SVG.
+law.tex, page.html (the live page: sliders and results in any browser), and the
+ruler, the switching loop and the schematic as PNG and SVG.
 Nothing that exists is replaced. Exit code: 0 done, 2 the input cannot be used."""
+
+_PUBLISH = """\
+Execute a notebook and write it down for readers who have neither kernel nor
+network: NAME.html, one page that holds everything and has the live page of its
+design beside each panel, and NAME.published.ipynb, the notebook with outputs
+that need no widgets. The notebook itself is left as it is."""
+
+_PUBLISH_EXAMPLES = """\
+examples:
+  python -m hystkit publish notebooks/vent.ipynb
+  python -m hystkit publish notebooks/vent.ipynb --out wiki --overwrite
+
+Exit code: 0 done, 2 the notebook cannot be used or one of its cells fails."""
 
 
 def main(argv: Sequence[str] | None = None) -> int:
@@ -50,7 +65,9 @@ def main(argv: Sequence[str] | None = None) -> int:
         if isinstance(stream, io.TextIOWrapper):
             stream.reconfigure(errors="replace")  # a terminal may not know the sign for ohm
     try:
-        for line in evaluate(sys.argv[1:] if argv is None else argv):
+        given = list(sys.argv[1:] if argv is None else argv)
+        job = publish if given[:1] == ["publish"] else evaluate
+        for line in job(given[1:] if job is publish else given):
             print(line, flush=True)
     except HystkitError as error:
         notes = getattr(error, "__notes__", ())
@@ -84,11 +101,14 @@ def evaluate(argv: Sequence[str]) -> Iterator[str]:
     """
     given = _parser().parse_args(argv)
     # Loaded after the arguments are read: --help must not wait for it.
+    from hystkit.base.files import check_free
     from hystkit.export.cautions import CAUTIONS
-    from hystkit.export.folder import FILES, free_folder, write_folder
+    from hystkit.export.folder import FILES, NEW_FOLDER, free_folder, write_folder
     from hystkit.export.summary import Summary
     from hystkit.symbolic.law import derive
 
+    if given.out is not None:
+        check_free(given.out, NEW_FOLDER)
     design = _design(given.design)
     summary = Summary(design)
     yield f"{summary}\n"
@@ -97,8 +117,44 @@ def evaluate(argv: Sequence[str]) -> Iterator[str]:
     label = design.name or (given.design.stem if given.design else "")
     folder = write_folder(design, given.out or free_folder(label, Path()))
     yield f"\nwritten to {folder}{os.sep}"
-    width = max(map(len, FILES))
-    yield from (f"  {name:<{width}}  {meaning}".rstrip() for name, meaning in FILES.items())
+    yield from _listed(FILES)
+
+
+def publish(argv: Sequence[str]) -> Iterator[str]:
+    """Execute a notebook and write it down for readers without kernel and network.
+
+    Parameters
+    ----------
+    argv : sequence of str
+        Arguments after "publish".
+
+    Yields
+    ------
+    str
+        What to tell the user, as it becomes known.
+    """
+    given = _publish_parser().parse_args(argv)
+    from hystkit.export.notebook.publish import publish as written_down
+
+    yield f"executing {given.notebook}"
+    done = written_down(given.notebook, given.out, timeout=given.timeout, overwrite=given.overwrite)
+    yield f"\nwritten to {done.page.parent}{os.sep}"
+    panels = {0: "", 1: ", a panel in it with its live page"}
+    beside = panels.get(done.panels, f", {done.panels} panels in it with their live pages")
+    yield from _listed(
+        {
+            done.page.name: f"one page that needs nothing else{beside}",
+            done.notebook.name: "the notebook, with outputs that need no widgets",
+        }
+    )
+    if done.left_out:
+        yield "\nnot in the page, which fetches nothing:"
+        yield from (f"  {address}" for address in done.left_out)
+
+
+def _listed(files: Mapping[str, str]) -> Iterator[str]:
+    width = max(map(len, files))
+    yield from (f"  {name:<{width}}  {meaning}".rstrip() for name, meaning in files.items())
 
 
 def _design(path: Path | None) -> Design:
@@ -113,6 +169,42 @@ def _design(path: Path | None) -> Design:
         if str(path) not in str(error):
             error.add_note(f"  file    {path}")
         raise
+
+
+def _publish_parser() -> argparse.ArgumentParser:
+    parser = argparse.ArgumentParser(
+        prog="python -m hystkit publish",
+        description=_PUBLISH,
+        epilog=_PUBLISH_EXAMPLES,
+        formatter_class=argparse.RawDescriptionHelpFormatter,
+        allow_abbrev=False,
+    )
+    parser.add_argument("notebook", type=Path, metavar="NOTEBOOK", help="a notebook, .ipynb")
+    parser.add_argument(
+        "--out",
+        type=Path,
+        metavar="FOLDER",
+        help="folder for both files (default: that of the notebook)",
+    )
+    parser.add_argument(
+        "--timeout",
+        type=_seconds,
+        default=600.0,
+        metavar="S",
+        help="longest time for one cell, in seconds (default: 600)",
+    )
+    parser.add_argument("--overwrite", action="store_true", help="replace files that exist")
+    return parser
+
+
+def _seconds(text: str) -> float:
+    try:
+        value = float(text)
+    except ValueError:
+        value = 0.0
+    if not 0 < value < float("inf"):
+        raise argparse.ArgumentTypeError(f"{text!r} is not a time in seconds, such as 120")
+    return value
 
 
 def _parser() -> argparse.ArgumentParser:

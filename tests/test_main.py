@@ -104,7 +104,9 @@ def test_nameless_design_is_called_after_its_file(
 def test_output_that_exists_is_refused(tmp_path: Path, capsys: pytest.CaptureFixture[str]) -> None:
     (tmp_path / "out").mkdir()
     assert command.main(["--out", str(tmp_path / "out")]) == 2
-    assert "exists already" in capsys.readouterr().err
+    told = capsys.readouterr()
+    assert "exists already" in told.err
+    assert told.out == ""
     assert list((tmp_path / "out").iterdir()) == []
 
 
@@ -119,7 +121,7 @@ STAGE = {"sense": "inverting", "supply": "single", "reference": "divider", "outp
         ("[]", ["not a hystkit design record"]),
         ("[" * 100_000, ["not JSON"]),
         (b"\x89PNG\r\n\x1a\n\xff", ["not JSON"]),
-        (json.dumps({**GOOD, "version": 99}), ["another version", "99"]),
+        (json.dumps({**GOOD, "version": 99}), ["newer version", "99"]),
         (json.dumps(GOOD), ["stage is missing", "parts is missing"]),
         (
             json.dumps({**GOOD, "stage": STAGE, "parts": {"R_T": "46k4", "R_X": "4,7k"}}),
@@ -182,7 +184,10 @@ def test_folder_that_cannot_be_made_is_told(
 ) -> None:
     (tmp_path / "file").write_text("", encoding="utf-8")
     assert command.main(["--out", str(tmp_path / "file" / "out")]) == 2
-    assert "cannot write" in capsys.readouterr().err
+    told = capsys.readouterr()
+    assert "cannot be written" in told.err
+    assert f"{tmp_path / 'file'} is a file" in told.err
+    assert told.out == ""
 
 
 def test_interrupt_is_quiet(

@@ -8,17 +8,24 @@ from collections.abc import Iterable, Iterator
 
 from hystkit.base.errors import Fault
 from hystkit.base.nearest import nearest_name
-from hystkit.circuit.elements import FIXED_NODES, INPUT_NODES, OUTPUT_NODE, Element, Resistor
+from hystkit.circuit.elements import FIXED_NODES, INPUT_NODES, OUTPUT_NODE, Element, Resistor, Wire
 from hystkit.circuit.netlist import Netlist, netlist
+from hystkit.circuit.reading import wrong_kind
 
 #: Symbols that a resistor must not take: the output resistances of the device.
 RESERVED = ("R_OH", "R_OL")
+#: What follows V_ in the symbols of a law that are no node's voltage.
+SUFFIXES = frozenset(
+    ("IN", "OH", "OL", "CC", "EE", "REF", "PU", "L", "OS", "upper", "lower", "width", "middle")
+)
 _NAME = re.compile(r"R[A-Za-z0-9]*(_[A-Za-z0-9]+)?")
 _NODE = re.compile(r"[A-Za-z][A-Za-z0-9]*")
 _NEEDED = (*INPUT_NODES, OUTPUT_NODE, "signal")
 
 
-def circuit_faults(elements: Iterable[Element], output: str) -> tuple[Fault, ...]:
+def circuit_faults(
+    elements: Iterable[Element], output: str, supply: str = "split"
+) -> tuple[Fault, ...]:
     """Find everything that keeps a circuit from being a switching stage.
 
     Parameters
@@ -27,6 +34,8 @@ def circuit_faults(elements: Iterable[Element], output: str) -> tuple[Fault, ...
         The declared circuit.
     output : str
         "push-pull" or "open-collector".
+    supply : str, default "split"
+        "single" or "split"; in a single supply ee and ground are one potential.
 
     Returns
     -------
@@ -34,12 +43,14 @@ def circuit_faults(elements: Iterable[Element], output: str) -> tuple[Fault, ...
         Empty when the circuit can switch.
     """
     elements = tuple(elements)
-    faults = [*_element_faults(elements)]
+    if strangers := [*_kind_faults(elements)]:
+        return tuple(strangers)
+    faults = [*_element_faults(elements), *_node_faults(elements)]
     net = netlist(elements)
     missing = [node for node in _NEEDED if node not in net.merged]
     faults += [_missing_node(node, net) for node in missing]
     if not missing:
-        shorts = [*_short_faults(net)]
+        shorts = [*_short_faults(net, supply)]
         faults += shorts or [
             *_path_faults(net),
             *_floating_faults(net),
@@ -99,14 +110,6 @@ def _element_faults(elements: tuple[Element, ...]) -> Iterator[Fault]:
                 " the device's",
                 remedy="a name such as R_1 or R_F2",
             )
-    for node in sorted({node for element in elements for node in element.nodes}):
-        if not _NODE.fullmatch(node):
-            yield Fault(
-                f"{node!r} cannot name a node.",
-                asked=f"a node {node!r}",
-                rule="a letter, then letters and digits",
-                remedy="a name such as n1 or tap",
-            )
     for element in elements:
         if element.node_a == element.node_b:
             label = element.name if isinstance(element, Resistor) else "a wire"
@@ -114,6 +117,36 @@ def _element_faults(elements: tuple[Element, ...]) -> Iterator[Fault]:
                 f"{label} has both ends on one node.",
                 asked=f"{label} from {element.node_a} to {element.node_b}",
                 remedy="give the node of its other end, or leave it out",
+            )
+
+
+def _kind_faults(elements: tuple[object, ...]) -> Iterator[Fault]:
+    """Find what is neither a resistor nor a wire between named nodes."""
+    example = 'Resistor("R_F", "out", "plus") or Wire("signal", "minus")'
+    for number, element in enumerate(elements, 1):
+        if not isinstance(element, Resistor | Wire):
+            yield wrong_kind(f"element {number}", element, "a Resistor or a Wire", example)
+            continue
+        texts = (*element.nodes, *((element.name,) if isinstance(element, Resistor) else ()))
+        if not all(isinstance(text, str) for text in texts):
+            yield wrong_kind(f"element {number}", element, "named by texts alone", example)
+
+
+def _node_faults(elements: tuple[Element, ...]) -> Iterator[Fault]:
+    fixed = {name.casefold(): name for name in (*FIXED_NODES, *_NEEDED)}
+    for node in sorted({node for element in elements for node in element.nodes}):
+        known = fixed.get(node.casefold(), node)
+        rule, remedy = "", "a name such as n1 or tap"
+        if not _NODE.fullmatch(node):
+            rule = "a letter, then letters and digits"
+        elif node in SUFFIXES:
+            rule = f"the voltage of a node is V_ and its name, and V_{node} is another quantity"
+        elif known != node:
+            rule = f"a node is told from {known} by more than capitals"
+            remedy = f"{known}, or a name such as n1"
+        if rule:
+            yield Fault(
+                f"{node!r} cannot name a node.", asked=f"a node {node!r}", rule=rule, remedy=remedy
             )
 
 
@@ -127,12 +160,14 @@ def _missing_node(node: str, net: Netlist) -> Fault:
     )
 
 
-def _short_faults(net: Netlist) -> Iterator[Fault]:
+def _short_faults(net: Netlist, supply: str) -> Iterator[Fault]:
     """Find wires that join what must stay apart."""
     for group in net.groups:
         held = sorted(group & FIXED_NODES.keys())
         pins = sorted(group & {*INPUT_NODES, OUTPUT_NODE})
-        if len(held) > 1:
+        # Both are 0 V there: a wire between them shorts nothing.
+        one = supply == "single" and held == ["ee", "ground"]
+        if len(held) > 1 and not one:
             yield Fault(
                 f"a wire shorts {' and '.join(held)}.",
                 asked=f"{', '.join(sorted(group))} on one node",

@@ -13,7 +13,7 @@ from hystkit.base.frozen import Named
 from hystkit.base.nearest import unknown_name_fault
 from hystkit.base.quantity import read
 from hystkit.circuit.code import design_code
-from hystkit.circuit.design_checks import design_faults, read_parts, read_supply
+from hystkit.circuit.design_checks import design_faults, kind_faults, read_parts, read_supply
 from hystkit.circuit.device import Device
 from hystkit.circuit.elements import Element
 from hystkit.circuit.parts import Part, Supply
@@ -78,11 +78,15 @@ class Design:
         signal: Signal | None = None,
         name: str = "",
     ) -> None:
-        faults: list[Fault] = []
+        device = Device() if device is None else device
+        levels = {} if levels is None else levels
+        faults = kind_faults(stage, parts, levels, device, signal, name)
+        if faults:
+            read_supply(supply, faults)
+            raise DesignError.of("this design", faults)
         resistors = read_parts(parts, "Ω", faults)
-        voltages = read_parts(levels or {}, "V", faults)
+        voltages = read_parts(levels, "V", faults)
         rails = read_supply(supply, faults)
-        device = device or Device()
         stage = stage.with_options(
             *(n for n in stage.optional if n in parts or n in stage.including)
         )

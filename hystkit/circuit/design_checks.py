@@ -8,14 +8,15 @@ from typing import TYPE_CHECKING
 
 from hystkit.base.errors import DesignError, Fault
 from hystkit.base.nearest import unknown_name_fault
-from hystkit.base.quantity import read
+from hystkit.base.quantity import read, show
 from hystkit.circuit.device import Device
 from hystkit.circuit.parts import Part, Supply
-from hystkit.circuit.reading import collect
+from hystkit.circuit.reading import collect, wrong_kind
+from hystkit.circuit.signals import Signal
+from hystkit.circuit.stage import Stage
 
 if TYPE_CHECKING:
     from hystkit.circuit.reading import Quantity
-    from hystkit.circuit.stage import Stage
 
 _LEVELS = ("V_REF", "V_PU", "V_L", "V_OH", "V_OL")
 
@@ -66,6 +67,39 @@ def read_supply(supply: Supply | Quantity, faults: list[Fault]) -> Supply | None
         return None
 
 
+def kind_faults(
+    stage: object, parts: object, levels: object, device: object, signal: object, name: object
+) -> list[Fault]:
+    """Find arguments of a design that are of another kind than those it takes.
+
+    Parameters
+    ----------
+    stage, parts, levels, device, signal, name : object
+        As they were given.
+
+    Returns
+    -------
+    list of Fault
+        Empty where each can be looked into.
+    """
+    values = {"parts": parts, "levels": levels}
+    examples = {"parts": '{"R_F": "100k", ...}', "levels": '{"V_REF": 2.5}'}
+    wanted: list[tuple[bool, tuple[str, object, str, str]]] = [
+        (isinstance(stage, Stage), ("stage", stage, "a Stage", 'Stage("inverting")')),
+        *(
+            (isinstance(given, Mapping), (key, given, "a mapping of names", examples[key]))
+            for key, given in values.items()
+        ),
+        (isinstance(device, Device), ("device", device, "a Device", "Device(drop_low=0.2)")),
+        (
+            signal is None or isinstance(signal, Signal),
+            ("signal", signal, "a signal", 'signals.Linear(1.2, span=(0, 2), unit="m")'),
+        ),
+        (isinstance(name, str), ("name", name, "text", f"name={str(name)!r}")),
+    ]
+    return [wrong_kind(*told) for fits, told in wanted if not fits]
+
+
 def design_faults(
     stage: Stage,
     parts: Mapping[str, Part | None],
@@ -101,7 +135,17 @@ def design_faults(
 
 def _as_part(name: str, value: Part | Quantity, unit: str, faults: list[Fault]) -> Part | None:
     if isinstance(value, Part):
-        return value
+        if value.unit in ("", unit):
+            return value
+        faults.append(
+            Fault(
+                f"{name} is not in {unit}.",
+                asked=f"a part in {unit}",
+                have=show(value.value, value.unit),
+                remedy=f"{name} = {'10k' if unit == 'Ω' else '2.5 V'}",
+            )
+        )
+        return None
     number = collect(faults, lambda: read(value, unit=unit, name=name))
     return None if math.isnan(number) else Part(number)
 

@@ -9,7 +9,7 @@ from hystkit.base.errors import DesignError, Fault
 from hystkit.base.frozen import Named
 from hystkit.base.nearest import unknown_name_fault
 from hystkit.base.quantity import read
-from hystkit.circuit.reading import Quantity, collect, members, set_frozen
+from hystkit.circuit.reading import Quantity, collect, is_kind, members, set_frozen, wrong_kind
 
 #: Device fields that may be below zero; all the others are magnitudes.
 _SIGNED = {"offset", "bias_plus", "bias_minus", "leakage", "common_mode_low", "common_mode_high"}
@@ -129,6 +129,12 @@ class Device:
             if field.name in UNITS and not (value is None and field.default is None):
                 value = _device_number(faults, field.name, value)
             set_frozen(self, field.name, value)
+        if not is_kind(name, str):
+            faults.append(wrong_kind("name", name, "text", f"name={str(name)!r}"))
+        if not is_kind(limits, Mapping | None):
+            example = 'limits={"offset": (-0.002, 0.002)}'
+            faults.append(wrong_kind("limits", limits, "a mapping of names", example))
+            limits = None
         set_frozen(self, "limits", _read_limits(faults, limits or {}, self))
         if faults:
             raise DesignError.of("this device", faults)

@@ -2,11 +2,15 @@
 
 from __future__ import annotations
 
+import math
 from dataclasses import dataclass
 
 from hystkit.base.errors import DesignError, Fault
 from hystkit.base.quantity import parse_percent, read
 from hystkit.circuit.reading import Quantity, collect, set_frozen
+
+#: Above this a temperature coefficient [1/K] was most likely meant in ppm/K.
+_LARGEST_TEMPCO = 0.1
 
 
 @dataclass(frozen=True)
@@ -19,13 +23,18 @@ class Part:
         Nominal value, such as ``26700.0``, ``"26k7"`` or ``"2.5 V"`` [Ohm or V].
     tol : float or str, default 0
         Relative tolerance, half of the full spread: ``0.01`` or ``"1 %"``; 0 <= tol < 1.
-    tempco : float, default 0
-        Temperature coefficient [1/K].
+    tempco : float or str, default 0
+        Temperature coefficient [1/K], such as ``50e-6`` or ``"50 ppm/K"``; 0.1/K at most.
 
     Raises
     ------
     DesignError
         Naming every one of the three that cannot be used.
+
+    Notes
+    -----
+    A text's unit is remembered, so that a design can refuse "2.5 V" for a resistor. It takes no
+    part in comparisons: ``Part("2.5 V") == Part(2.5)``.
 
     Examples
     --------
@@ -41,19 +50,35 @@ class Part:
         faults: list[Fault] = []
         set_frozen(self, "value", collect(faults, lambda: _read_any(value)))
         set_frozen(self, "tol", collect(faults, lambda: parse_percent(tol)))
-        set_frozen(self, "tempco", collect(faults, lambda: read(tempco, name="tempco")))
+        set_frozen(self, "tempco", collect(faults, lambda: read(tempco, unit="1/K", name="tempco")))
+        # No field of the dataclass, so that it stays out of comparisons, records and the repr.
+        set_frozen(self, "_unit", _unit_in(value))
         # What could not be read is NaN here, and a fault already.
         if self.tol < 0 or self.tol >= 1:
             faults.append(
                 Fault(
                     "the tolerance of a part is outside its range.",
                     asked=f"tol = {tol!r}",
-                    rule="0 <= tol < 1 (a fraction of the value)",
-                    remedy='a fraction such as 0.01, or the text "1 %"',
+                    rule="0 % <= tol < 100 %",
+                    remedy="1 %",
+                )
+            )
+        if abs(self.tempco) > _LARGEST_TEMPCO:
+            faults.append(
+                Fault(
+                    "the temperature coefficient of a part is outside its range.",
+                    asked=f"tempco = {tempco!r}",
+                    rule=f"-{_LARGEST_TEMPCO:g}/K <= tempco <= {_LARGEST_TEMPCO:g}/K",
+                    remedy="100 ppm/K",
                 )
             )
         if faults:
             raise DesignError.of("this part", faults)
+
+    @property
+    def unit(self) -> str:
+        """Unit that the text of the value carried, "Ω" or "V"; empty where it carried none."""
+        return str(vars(self)["_unit"])
 
     def with_value(self, value: Quantity) -> Part:
         """Give the same part with another nominal value.
@@ -106,19 +131,12 @@ class Supply:
                 Fault(
                     "the supply tolerance is outside its range.",
                     asked=f"tol = {tol!r}",
-                    rule="0 <= tol < 1 (a fraction of the voltage)",
-                    remedy='a fraction such as 0.05, or the text "5 %"',
+                    rule="0 % <= tol < 100 %",
+                    remedy="5 %",
                 )
             )
         if self.v_cc <= self.low_rail:
-            faults.append(
-                Fault(
-                    "the supply rails are the wrong way round.",
-                    asked=f"V_CC = {self.v_cc:g} V, V_EE = {self.low_rail:g} V",
-                    rule="V_CC > V_EE (V_EE is 0 V in a single supply)",
-                    remedy="exchange the two rails, or give a positive V_CC",
-                )
-            )
+            faults.append(_rails_fault(self))
         if faults:
             raise DesignError.of("this supply", faults)
 
@@ -133,7 +151,32 @@ class Supply:
         return 0.0 if self.v_ee is None else self.v_ee
 
 
+def _rails_fault(supply: Supply) -> Fault:
+    if supply.split:
+        return Fault(
+            "the supply rails are the wrong way round.",
+            asked=f"V_CC = {supply.v_cc:g} V, V_EE = {supply.low_rail:g} V",
+            rule="V_CC > V_EE",
+            remedy="exchange the two rails",
+        )
+    return Fault(
+        "V_CC is not above 0 V.",
+        asked=f"V_CC = {supply.v_cc:g} V",
+        rule="V_CC > 0 V, the negative rail of a single supply",
+        remedy="a positive V_CC, or both rails: Supply(12, -12)",
+    )
+
+
 def _read_any(value: Quantity) -> float:
     """Read a resistance or a voltage, whichever unit the text carries."""
-    is_voltage = isinstance(value, str) and "V" in value
-    return read(value, unit="V" if is_voltage else "Ω")
+    return read(value, unit="V" if _unit_in(value) == "V" else "Ω", name="value")
+
+
+def _unit_in(value: object) -> str:
+    """Tell which unit a text carries: "V", "Ω", or "" where it fits both."""
+    if not isinstance(value, str):
+        return ""
+    if "V" in value:
+        return "V"
+    faults: list[Fault] = []
+    return "Ω" if math.isnan(collect(faults, lambda: read(value, unit="V"))) else ""

@@ -12,6 +12,7 @@ from hystkit.base.nearest import unknown_name_fault
 from hystkit.circuit.checks import circuit_faults, infer_sense
 from hystkit.circuit.elements import FIXED_NODES, Element, Resistor
 from hystkit.circuit.forms import CHOICES, form_elements, optional_parts
+from hystkit.circuit.reading import is_kind, wrong_kind
 
 
 @dataclass(frozen=True)
@@ -110,9 +111,14 @@ class Stage:
         DesignError
             Naming everything that keeps the circuit from switching.
         """
+        if is_kind(elements, str) or not is_kind(elements, Iterable):
+            example = '[Resistor("R_F", "out", "plus"), Wire("signal", "minus"), ...]'
+            told = wrong_kind("elements", elements, "a list of resistors and wires", example)
+            raise DesignError.of("this circuit", [told])
         wiring = tuple(elements)
         chosen = {"supply": supply, "output": output} | ({"sense": sense} if sense else {})
-        faults = [*_choice_faults(chosen), *circuit_faults(wiring, output)]
+        faults = [] if is_kind(name, str) else [wrong_kind("name", name, "text", f"'{name}'")]
+        faults += [*_choice_faults(chosen), *circuit_faults(wiring, output, supply)]
         if not faults:
             found = infer_sense(wiring)
             faults = _sense_faults(sense, found)

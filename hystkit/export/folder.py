@@ -1,4 +1,4 @@
-"""Everything about a design in one folder: record, numbers, LaTeX and figures."""
+"""Everything about a design in one folder: record, numbers, LaTeX, live page and figures."""
 
 from __future__ import annotations
 
@@ -11,9 +11,9 @@ from itertools import count
 from pathlib import Path
 from typing import TYPE_CHECKING, Any
 
+from hystkit.base.files import check_free, write_text
 from hystkit.circuit.design import Design
 from hystkit.circuit.record import save
-from hystkit.export.files import already_there, write_text
 from hystkit.export.fragment import write_tex
 from hystkit.export.summary import Summary
 
@@ -25,6 +25,7 @@ FILES = {
     "design.json": "the design, for hystkit.load",
     "numbers.json": "trip points and values, unrounded",
     "law.tex": "derivation, formula and tables, to \\input in LaTeX",
+    "page.html": "live page: sliders, figures, law and tables in any browser",
     "ruler.png": "volt axis with all that must fit together",
     "ruler.svg": "",
     "loop.png": "switching loop",
@@ -32,6 +33,8 @@ FILES = {
     "schematic.png": "schematic with values",
     "schematic.svg": "",
 }
+#: What to do where the folder exists.
+NEW_FOLDER = "a folder that does not exist yet"
 _LONGEST_NAME = 60
 
 
@@ -54,12 +57,13 @@ def write_folder(design: Design, folder: str | os.PathLike[str]) -> Path:
     ------
     OutputExistsError
         If there is something of that name already.
+    InputError
+        If one of the folders above it is a file.
     DesignError
         If the design has no trip points.
     """
     target = Path(folder)
-    if target.exists():
-        raise already_there(target, "a folder that does not exist yet")
+    check_free(target, NEW_FOLDER)
     summary = Summary(design)
     target.parent.mkdir(parents=True, exist_ok=True)
     partial = target.with_name(f".{target.name}.{os.getpid()}.partial")
@@ -101,6 +105,7 @@ def free_folder(name: str, parent: Path) -> Path:
 
 def _fill(folder: Path, summary: Summary) -> None:
     # Drawing is loaded where something is drawn: LaTeX alone does without it.
+    from hystkit.export.page.writer import write_page
     from hystkit.figures.loop import loop as loop_picture
     from hystkit.figures.ruler import ruler
     from hystkit.figures.schematic import schematic
@@ -111,6 +116,7 @@ def _fill(folder: Path, summary: Summary) -> None:
     numbers = json.dumps(summary.record(), indent=2, ensure_ascii=False, allow_nan=False)
     write_text(folder / "numbers.json", numbers + "\n")
     write_tex(design, folder / "law.tex")
+    write_page(design, folder / "page.html")
     pictures: dict[str, Picture[Any]] = {
         "ruler": ruler(summary.levels),
         "loop": loop_picture(loop(design)),

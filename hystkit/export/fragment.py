@@ -9,10 +9,10 @@ from pathlib import Path
 
 from hystkit import __version__
 from hystkit.base.fields import Field, Viewed, escape_latex
+from hystkit.base.files import write_text
 from hystkit.base.quantity import show_latex
 from hystkit.circuit.design import Design
 from hystkit.export.cautions import CAUTIONS
-from hystkit.export.files import write_text
 from hystkit.export.summary import Summary
 from hystkit.symbolic.law import SwitchingLaw, derive
 from hystkit.symbolic.steps import Step

@@ -20,6 +20,8 @@ class Status(IntEnum):
     OUTPUT_LEVELS = 4
     SENSE = 5
     NO_HYSTERESIS = 6
+    RAIL = 7
+    NEGATIVE = 8
 
     @property
     def message(self) -> str:
@@ -35,6 +37,8 @@ _MESSAGES = {
     Status.OUTPUT_LEVELS: "the high output level is not above the low one",
     Status.SENSE: "the signal drives the inputs against the stated sense",
     Status.NO_HYSTERESIS: "the upper trip is not above the lower: no hysteresis",
+    Status.RAIL: "V_CC is not above 0 V",
+    Status.NEGATIVE: "an output resistance is negative",
 }
 
 
@@ -71,11 +75,12 @@ def status_of(
     _mark(status, Status.NO_HYSTERESIS, switches)
     _mark(status, Status.SENSE, np.logical_not(against_sense))
     _mark(status, Status.OUTPUT_LEVELS, np.greater(high, values["V_OL"]))
-    _mark(status, Status.RAILS, np.greater(values["V_CC"], values.get("V_EE", 0.0)))
+    rails = Status.RAILS if "V_EE" in values else Status.RAIL
+    _mark(status, rails, np.greater(values["V_CC"], values.get("V_EE", 0.0)))
+    for name in ("R_OH", "R_OL"):
+        _mark(status, Status.NEGATIVE, np.greater_equal(values.get(name, 0.0), 0))
     for name in parts:
         _mark(status, Status.NOT_POSITIVE, np.greater(values[name], 0))
-    for name in ("R_OH", "R_OL"):
-        _mark(status, Status.NOT_POSITIVE, np.greater_equal(values.get(name, 0.0), 0))
     for value in values.values():
         _mark(status, Status.NOT_FINITE, np.isfinite(value))
     return status

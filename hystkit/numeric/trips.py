@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Mapping, Sequence
+from collections.abc import Collection, Iterator, Mapping, Sequence
 from dataclasses import dataclass
 from typing import Any
 
@@ -15,11 +15,24 @@ from hystkit.base.nearest import unknown_name_fault
 from hystkit.base.quantity import read
 from hystkit.circuit.design import Design, law_values
 from hystkit.circuit.device import LAW_FIELDS, UNITS
-from hystkit.circuit.reading import collect
+from hystkit.circuit.reading import collect, is_kind, wrong_kind
 from hystkit.circuit.signals import Signal
 from hystkit.circuit.stage import Stage
 from hystkit.numeric.compile import kernel
 from hystkit.numeric.status import Status, status_of
+from hystkit.numeric.tolerances import acts
+
+#: Device field -> symbol of the law that it sets.
+_SYMBOLS = {
+    "drop_high": "V_OH",
+    "drop_low": "V_OL",
+    "r_high": "R_OH",
+    "r_low": "R_OL",
+    "leakage": "I_LK",
+    "offset": "V_OS",
+    "bias_plus": "I_BP",
+    "bias_minus": "I_BN",
+}
 
 
 @dataclass(frozen=True)
@@ -45,11 +58,19 @@ class Measurand(Viewed):
 
     def _fields(self) -> Sequence[Field]:
         other = "upper" if self.low_is == "lower" else "lower"
+        low, high, width = (self._plain(v) for v in (self.low, self.high, self.width))
         return (
-            Field(f"{self.name}, low", _span(self.low), self.unit, f"{self.low_is} trip point"),
-            Field(f"{self.name}, high", _span(self.high), self.unit, f"{other} trip point"),
-            Field("width", _span(self.width), self.unit),
+            Field(f"{self.name}, low", low, "", f"{self.low_is} trip point"),
+            Field(f"{self.name}, high", high, "", f"{other} trip point"),
+            Field(f"{self.name}, width", width),
         )
+
+    def _plain(self, values: Any) -> str:
+        """Write values in the unit itself: a level in m does not turn into mm."""
+        span = _span(values)
+        low, high = span if isinstance(span, tuple) else (span, span)
+        ends = dict.fromkeys(f"{end:.4g}" for end in (low, high))
+        return f"{' to '.join(ends)} {self.unit}".rstrip()
 
 
 @dataclass(frozen=True)
@@ -135,7 +156,8 @@ def trip_points(design: Design, **overrides: ArrayLike | str) -> TripPoints:
     QuantityError
         If a value cannot be read as a number or an array of numbers; every such one is reported.
     InputError
-        If the shapes do not broadcast.
+        If `design` is no design, an override does not act in it, two of them set one quantity,
+        or the shapes do not broadcast.
 
     Notes
     -----
@@ -149,6 +171,9 @@ def trip_points(design: Design, **overrides: ArrayLike | str) -> TripPoints:
     >>> [round(float(v), 3) for v in trip_points(tank, R_F=[100e3, 200e3]).width]
     [0.725, 0.391]
     """
+    if not is_kind(design, Design):
+        remedy = "hk.trip_points(hk.Design(stage, parts, supply=5.0))"
+        raise InputError.of("this request", [wrong_kind("design", design, "a Design", remedy)])
     values = overridden(design, overrides)
     with np.errstate(all="ignore"):
         upper, lower = kernel(design.stage).trips(values)
@@ -176,9 +201,11 @@ def overridden(design: Design, overrides: dict[str, Any]) -> dict[str, Any]:
         Symbol name to float or ndarray.
     """
     known = (*design.values, *LAW_FIELDS)
-    faults = [unknown_name_fault("symbol", n, known) for n in overrides if n not in known]
+    faults = [_unknown(n, known) for n in overrides if n not in known]
     if faults:
         raise UnknownNameError.of("these overrides", faults)
+    if faults := [*_idle(design, overrides), *_twofold(overrides)]:
+        raise InputError.of("these overrides", faults)
     given = _numbers(overrides)
     device = {name: given.pop(name, value) for name, value in design.device.law_fields.items()}
     levels = {name: part.value for name, part in design.levels.items()}
@@ -186,6 +213,45 @@ def overridden(design: Design, overrides: dict[str, Any]) -> dict[str, Any]:
     v_ee = given.get("V_EE", design.supply.low_rail)
     following = law_values(design.stage, device, levels, v_cc, v_ee)
     return {**design.values, **following, **given}
+
+
+def _unknown(name: str, known: tuple[str, ...]) -> Fault:
+    if name != "V_IN":
+        return unknown_name_fault("symbol", name, known)
+    return Fault(
+        "V_IN is the signal, and has no value of its own here.",
+        asked=name,
+        have="the trip points are the values of V_IN at which the stage switches",
+        remedy="leave it out; hk.response follows a signal in time",
+    )
+
+
+def _idle(design: Design, names: Collection[str]) -> Iterator[Fault]:
+    """Find overrides that the law of this design does not hold."""
+    for name in names:
+        if name not in LAW_FIELDS or acts(design, name):
+            continue
+        level = _SYMBOLS[name]
+        given = level in design.levels
+        yield Fault(
+            f"{name} does not act in this design.",
+            asked=f"another {name}",
+            have=f"{level} is given" if given else f"a {design.stage.output} output",
+            rule=f"a level that is given replaces {name}" if given else "",
+            remedy=f"{level} itself" if given else f"leave {name} out",
+        )
+
+
+def _twofold(names: Collection[str]) -> Iterator[Fault]:
+    """Find quantities that two overrides set."""
+    for field, name in _SYMBOLS.items():
+        if field in names and name in names:
+            yield Fault(
+                f"{name} and {field} are given together.",
+                asked=f"another {name} and another {field}",
+                rule=f"{field} sets {name}",
+                remedy=f"{name} or {field}",
+            )
 
 
 def _against_sense(stage: Stage, values: Mapping[str, Any]) -> Any:
@@ -222,8 +288,9 @@ def _number(name: str, value: Any, faults: list[Fault]) -> float | NDArray[np.fl
         unit = UNITS.get(name) or {"R": "Ω", "V": "V", "I": "A"}[name[0]]
         return collect(faults, lambda: read(value, unit=unit, name=name))
     try:
-        # numpy would take None for NaN.
-        return np.asarray(value if value is not None else "", dtype=float)[()]
+        # numpy would take None for NaN, and True for 1.
+        plain = value is not None and np.asarray(value).dtype != bool
+        return np.asarray(value if plain else "", dtype=float)[()]
     except (TypeError, ValueError):
         faults.append(
             Fault(
@@ -242,4 +309,5 @@ def _span(values: Any) -> float | tuple[float, float]:
     possible = np.asarray(values)[np.isfinite(values)]
     if possible.size == 0:
         return float("nan")
-    return float(possible.min()), float(possible.max())
+    low, high = float(possible.min()), float(possible.max())
+    return low if low == high else (low, high)

@@ -3,13 +3,14 @@
 from __future__ import annotations
 
 from collections.abc import Sequence
+from typing import Any
 
 import pytest
 
 import hystkit as hk
-from hystkit.circuit.checks import circuit_faults, infer_sense
+from hystkit.circuit.checks import SUFFIXES, circuit_faults, infer_sense
 from hystkit.circuit.elements import Element
-from tests.circuit.strategies import BRIDGE, TAPPED
+from tests.circuit.strategies import BRIDGE, TAPPED, VARIANTS
 
 R, W = hk.Resistor, hk.Wire
 
@@ -112,6 +113,53 @@ def test_a_misspelt_node_is_recognised() -> None:
     assert "is 'ground' meant?" not in fault.remedy  # nothing is connected to ground here
     (fault,) = circuit_faults([*SOUND, R("R_G", "minuss", "ground")], "push-pull")
     assert "is 'minus' meant?" in fault.remedy
+
+
+@pytest.mark.parametrize("element", [("R_1", "out", "cc"), 5, None, R("R_1", "out", 3)])  # type: ignore[arg-type]
+def test_what_is_no_element(element: Any) -> None:
+    with pytest.raises(hk.DesignError) as caught:
+        hk.Stage.custom([*SOUND, element, "R_2"])  # type: ignore[list-item]
+    found = [fault.problem.split(" is ")[0] for fault in caught.value.faults]
+    assert found == ["element 5", "element 6"]
+    assert all(fault.remedy for fault in caught.value.faults)
+
+
+@pytest.mark.parametrize("elements", [5, None, "R_1"])
+def test_what_is_no_circuit(elements: Any) -> None:
+    with pytest.raises(hk.DesignError, match="elements is not a list"):
+        hk.Stage.custom(elements)
+
+
+def test_the_name_of_a_circuit_is_text() -> None:
+    with pytest.raises(hk.DesignError, match="name is not text"):
+        hk.Stage.custom(SOUND, name=3)  # type: ignore[arg-type]
+
+
+def test_ground_and_the_negative_rail_are_one_in_a_single_supply() -> None:
+    wired = [*SOUND, W("ee", "ground")]
+    assert [*circuit_faults(wired, "push-pull", "single")] == []
+    (fault,) = circuit_faults(wired, "push-pull", "split")
+    assert fault.problem == "a wire shorts ee and ground."
+    joined = hk.Stage.custom(
+        [*SOUND[:1], R("R_B", "plus", "ground"), *SOUND[2:], W("ee", "ground")]
+    )
+    parts = {"R_T": "46k4", "R_B": "26k7", "R_F": "100k"}
+    built_in = hk.trip_points(hk.Design(hk.Stage("inverting"), parts, supply=5))
+    trips = hk.trip_points(hk.Design(joined, parts, supply=5))
+    assert (trips.upper, trips.lower) == pytest.approx((built_in.upper, built_in.lower))
+
+
+@pytest.mark.parametrize("node", [*sorted(SUFFIXES), "CC0", "Plus", "GROUND", "Signal", "Out"])
+def test_nodes_that_could_be_taken_for_something_else(node: str) -> None:
+    circuit = [*SOUND, R("R_1", "plus", node), R("R_2", node, "ee")]
+    expected = [] if node == "CC0" else [f"{node!r} cannot name a node."]
+    assert problems(circuit) == expected
+
+
+def test_every_voltage_of_the_laws_is_kept_from_the_nodes() -> None:
+    names = {name for stage in VARIANTS for name in hk.derive(stage).symbols}
+    voltages = {str(name).removeprefix("V_") for name in names if str(name).startswith("V_")}
+    assert voltages - {"plus", "minus", "out"} <= SUFFIXES
 
 
 def test_all_faults_are_reported_at_once() -> None:

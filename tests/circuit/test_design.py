@@ -77,7 +77,9 @@ def test_an_optional_part_that_the_stage_includes_needs_a_value() -> None:
         ({"levels": {"V_OHH": 4}}, "there is no level of this stage 'V_OHH' here."),
         ({"levels": {"V_OH": "4 Ω"}}, "V_OH is not in V."),
         ({"supply": (5, -5)}, "V_CC is not a single number."),
-        ({"supply": -5}, "the supply rails are the wrong way round."),
+        ({"supply": -5}, "V_CC is not above 0 V."),
+        ({"parts": {**PARTS, "R_F": hk.Part("2.5 V")}}, "R_F is not in Ω."),
+        ({"levels": {"V_OH": hk.Part("2.5 kΩ")}}, "V_OH is not in V."),
         (
             {"supply": hk.Supply(5, -5)},
             "a stage on a single supply was given a split one.",
@@ -86,6 +88,28 @@ def test_an_optional_part_that_the_stage_includes_needs_a_value() -> None:
 )
 def test_one_fault(changes: Mapping[str, Any], problem: str) -> None:
     assert faults_of(**changes) == [problem]
+
+
+@pytest.mark.parametrize(
+    ("changes", "problem"),
+    [
+        ({"stage": "inverting"}, "stage is not a Stage."),
+        ({"parts": None}, "parts is not a mapping of names."),
+        ({"parts": ["R_T"]}, "parts is not a mapping of names."),
+        ({"levels": [2.5]}, "levels is not a mapping of names."),
+        ({"device": "comparator"}, "device is not a Device."),
+        ({"signal": "x"}, "signal is not a signal."),
+        ({"name": 3}, "name is not text."),
+    ],
+)
+def test_an_argument_of_another_kind(changes: Mapping[str, Any], problem: str) -> None:
+    assert faults_of(**changes) == [problem]
+    with pytest.raises(hk.DesignError) as caught:
+        tank(**changes, supply=-5)
+    assert len(caught.value.faults) == 2
+    assert caught.value.faults[0].asked
+    assert caught.value.faults[0].have
+    assert caught.value.faults[0].remedy
 
 
 def test_faults_of_other_forms() -> None:

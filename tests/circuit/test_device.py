@@ -89,3 +89,10 @@ def test_a_device_is_a_value() -> None:
         assert hash(twin) == hash(device)
     assert device.law_fields == {name: getattr(device, name) for name in LAW_FIELDS}
     assert device != hk.Device(offset="2 mV", name="comparator class")
+
+
+@pytest.mark.parametrize("field", ["name", "limits"])
+def test_a_field_of_another_kind(field: str) -> None:
+    with pytest.raises(hk.DesignError) as caught:
+        hk.Device(**{field: 3}, delay=-1)  # type: ignore[arg-type]
+    assert [fault.problem.split()[0] for fault in caught.value.faults] == ["delay", field]

@@ -8,6 +8,7 @@ import pickle
 import pytest
 
 import hystkit as hk
+from hystkit.base.quantity import parse_percent
 
 
 @pytest.mark.parametrize(
@@ -58,11 +59,54 @@ def test_a_supply_is_split_where_it_has_a_negative_rail() -> None:
     assert hk.Supply(5, 0).split
 
 
-@pytest.mark.parametrize("rails", [(0,), (-5,), (5, 5), (5, 6), (-12, 12)])
+@pytest.mark.parametrize("rails", [(5, 5), (5, 6), (-12, 12)])
 def test_rails_the_wrong_way_round(rails: tuple[float, ...]) -> None:
     with pytest.raises(hk.DesignError, match="wrong way round") as caught:
         hk.Supply(*rails)
-    assert caught.value.faults[0].rule.startswith("V_CC > V_EE")
+    assert caught.value.faults[0].remedy == "exchange the two rails"
+
+
+@pytest.mark.parametrize("v_cc", [0, -5])
+def test_a_single_supply_has_no_rails_to_exchange(v_cc: float) -> None:
+    with pytest.raises(hk.DesignError, match="V_CC is not above 0 V") as caught:
+        hk.Supply(v_cc)
+    assert "V_EE" not in str(caught.value)
+    assert "exchange" not in str(caught.value)
+
+
+@pytest.mark.parametrize(
+    ("text", "unit"),
+    [
+        *[(text, "V") for text in ("2.5 V", "2V5", "4 mV")],
+        *[(text, "Ω") for text in ("4.7 kΩ", "2kohm", "1R5", "47R")],
+        *[(text, "") for text in ("4k7", "2.5", 2.5)],
+    ],
+)
+def test_the_unit_of_a_text_is_remembered(text: str | float, unit: str) -> None:
+    part = hk.Part(text)
+    assert pickle.loads(pickle.dumps(part)).unit == part.unit == unit
+    assert part == hk.Part(part.value)
+    assert repr(part) == repr(hk.Part(part.value))
+
+
+@pytest.mark.parametrize("tempco", ["100 ppm/K", "100ppm/°C", "0.01 %/K", 1e-4, "1e-4"])
+def test_a_temperature_coefficient_however_it_is_written(tempco: float | str) -> None:
+    assert hk.Part("1k", tempco=tempco).tempco == pytest.approx(1e-4)
+
+
+@pytest.mark.parametrize("tempco", [100, -0.11, "20 %/K"])
+def test_a_temperature_coefficient_that_was_meant_in_ppm(tempco: float | str) -> None:
+    with pytest.raises(hk.DesignError, match="temperature coefficient") as caught:
+        hk.Part("1k", tempco=tempco)
+    assert hk.Part("1k", tempco=caught.value.faults[0].remedy).tempco == pytest.approx(1e-4)
+
+
+def test_what_to_try_in_place_of_a_tolerance_is_right_under_a_heading_in_per_cent() -> None:
+    for make in (lambda: hk.Part("1k", tol=1.2), lambda: hk.Supply(5, tol=1.2)):
+        with pytest.raises(hk.DesignError) as caught:
+            make()
+        remedy = caught.value.faults[0].remedy
+        assert parse_percent(remedy) == parse_percent(remedy, bare=True) < 0.1
 
 
 def test_every_fault_of_a_supply_is_reported_at_once() -> None:

@@ -71,6 +71,12 @@ def test_save_never_replaces_a_file_unasked(tmp_path: Path) -> None:
     assert hk.load(path).parts["R_F"].value == 1e6
 
 
+def test_only_a_design_is_saved(tmp_path: Path) -> None:
+    with pytest.raises(hk.InputError, match="design is not a Design"):
+        hk.save(hk.Stage("inverting"), tmp_path / "a.json")  # type: ignore[arg-type]
+    assert list(tmp_path.iterdir()) == []
+
+
 def test_a_signal_of_another_kind_is_not_saved() -> None:
     class Own(hk.signals.Linear):
         """Someone's own description, which a record does not know."""
@@ -132,9 +138,71 @@ def test_a_file_that_is_not_there(tmp_path: Path) -> None:
             hk.load(path)
 
 
-@pytest.mark.parametrize("version", [0, 2, "1", None, [1], 1e9])
-def test_another_version(version: object) -> None:
-    assert faults_of(written(version=version)) == ["this record is of another version."]
+@pytest.mark.parametrize("version", [0, -1, "1", None, [1], 1e9, True, 1.0])
+def test_what_is_no_version(version: object) -> None:
+    assert faults_of(written(version=version)) == ["this is not a version of a design record."]
+
+
+def test_a_newer_version_asks_for_a_newer_hystkit() -> None:
+    with pytest.raises(hk.RecordError, match="newer version") as caught:
+        from_record(written(version=2))
+    assert caught.value.faults[0].remedy == "a newer hystkit"
+
+
+def test_a_byte_order_mark_is_passed_over(tmp_path: Path) -> None:
+    path = tmp_path / "marked.json"
+    path.write_bytes(b"\xef\xbb\xbf" + json.dumps(written()).encode())
+    assert hk.load(path) == from_record(written())
+
+
+def test_a_key_that_stands_twice_is_refused(tmp_path: Path) -> None:
+    path = tmp_path / "twice.json"
+    text = json.dumps(written(name=5)).replace('"R_F": {', '"R_F": 5, "R_F": {', 1)
+    path.write_text(text, encoding="utf-8")
+    with pytest.raises(hk.RecordError, match="the key 'R_F' stands twice") as caught:
+        hk.load(path)
+    assert len(caught.value.faults) == 2
+
+
+def test_save_tells_what_is_in_the_way(tmp_path: Path) -> None:
+    for target in (tmp_path / "none" / "tank.json", tmp_path):
+        with pytest.raises(hk.InputError, match="cannot be written"):
+            hk.save(from_record(written()), target)
+    assert list(tmp_path.iterdir()) == []
+
+
+@pytest.mark.parametrize(
+    ("changes", "problems"),
+    [
+        ({"stage": {"sence": "inverting"}}, ["no key of a stage 'sence'", "sense is missing"]),
+        ({"parts": {"R_F": {"tolerance": 2}}}, ["no key of a part 'tolerance'", "value is"]),
+        ({"supply": {"vcc": 5}}, ["no key of a supply 'vcc'", "v_cc is missing"]),
+        ({"device": {"drop_lo": 0.2}}, ["no key of a device 'drop_lo'"]),
+        ({"levels": {"V_REF": {"val": 2}}}, ["no key of a part 'val'", "value is missing"]),
+        (
+            {"signal": {"kind": "linear", "gain": 2}},
+            ["no key of a linear 'gain'", "per_unit", "sp"],
+        ),
+        ({"stage": {"elements": [["R_1", "a"], ["R_2"], 5]}}, ["an element", "an element"]),
+        ({"stage": 5, "supply": None, "parts": []}, ["this stage", "this section", "V_CC"]),
+    ],
+)
+def test_faults_of_a_section_name_its_keys(changes: JsonObject, problems: list[str]) -> None:
+    found = faults_of(written(**changes))
+    assert len(found) == len(problems)
+    assert all(told in each for told, each in zip(problems, found, strict=True)), found
+    assert not any("__init__" in each or "Error" in each for each in found)
+
+
+def test_what_does_not_fit_together_is_told_beside_the_rest() -> None:
+    found = faults_of(written(levels={}, device={"delay": -1}, signal={"kind": "linear"}, extra=1))
+    assert [each.split()[0] for each in found] == [
+        "there",
+        "device:",
+        "signal:",
+        "signal:",
+        "V_REF",
+    ]
 
 
 def test_unknown_and_missing_keys_are_reported_together() -> None:

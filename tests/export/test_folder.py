@@ -65,6 +65,11 @@ def test_latex_is_the_fragment(folder: Path) -> None:
     assert (folder / "law.tex").read_text(encoding="utf-8") == hk.export.tex(header_tank())
 
 
+def test_page_is_the_live_page(folder: Path, tmp_path: Path) -> None:
+    written = hk.write_page(header_tank(), tmp_path / "page.html")
+    assert (folder / "page.html").read_bytes() == written.path.read_bytes()
+
+
 @pytest.mark.parametrize("name", [name for name in FILES if name.endswith(".png")])
 def test_png_shows_something(folder: Path, name: str) -> None:
     with Image.open(io.BytesIO((folder / name).read_bytes())) as picture:

@@ -20,7 +20,7 @@ CASES: list[tuple[dict[str, Any], Status]] = [
     ({}, Status.OK),
     ({"R_T": 0}, Status.NOT_POSITIVE),
     ({"R_L": -1e3}, Status.NOT_POSITIVE),
-    ({"R_OL": -1}, Status.NOT_POSITIVE),
+    ({"R_OL": -1}, Status.NEGATIVE),
     ({"R_OL": 0}, Status.OK),
     ({"R_F": np.inf}, Status.NOT_FINITE),
     ({"V_OS": np.nan}, Status.NOT_FINITE),
@@ -57,6 +57,15 @@ def test_one_impossible_element_does_not_stop_the_others() -> None:
     sound = trips.upper[trips.ok]
     assert np.all(sound == hk.trip_points(DESIGN).upper)
     assert np.all(np.isnan(trips.upper[~trips.ok]))
+
+
+def test_a_single_supply_has_no_negative_rail_to_speak_of() -> None:
+    parts = {"R_T": "33k", "R_B": "47k", "R_F": "220k"}
+    design = hk.Design(hk.Stage("inverting"), parts, supply=5)
+    trips = hk.trip_points(design, V_CC=[5.0, 0.0, -1.0], V_OH=1.0)
+    assert trips.status.tolist() == [Status.OK, Status.RAIL, Status.RAIL]
+    assert "V_EE" not in Status.RAIL.message
+    assert hk.trip_points(design, r_high=-1).status == Status.NEGATIVE
 
 
 def test_every_status_says_what_is_wrong() -> None:

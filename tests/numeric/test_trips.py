@@ -267,6 +267,48 @@ def test_unknown_overrides_are_reported_together() -> None:
     assert [fault.remedy for fault in caught.value.faults][:2] == ["R_F", "V_CC"]
 
 
+def test_the_signal_is_no_override() -> None:
+    with pytest.raises(hk.UnknownNameError, match="V_IN is the signal"):
+        hk.trip_points(tank(), V_IN=2.0)
+
+
+@pytest.mark.parametrize(
+    ("design", "overrides", "problems"),
+    [
+        (tank(), {"R_OH": 100, "r_high": 50}, ["R_OH and r_high are given together."]),
+        (tank(), {"V_OH": 4.5, "drop_high": 1}, ["V_OH and drop_high are given together."]),
+        (tank(), {"leakage": 1}, ["leakage does not act in this design."]),
+        (
+            tank(levels={"V_OL": 0.1}),
+            {"drop_low": 0.2, "leakage": [0, 1], "offset": 0, "V_OS": 0},
+            [
+                "drop_low does not act in this design.",
+                "leakage does not act in this design.",
+                "V_OS and offset are given together.",
+            ],
+        ),
+    ],
+)
+def test_overrides_that_do_not_go_with_the_design(
+    design: hk.Design, overrides: dict[str, Any], problems: list[str]
+) -> None:
+    with pytest.raises(hk.InputError) as caught:
+        hk.trip_points(design, **overrides)
+    assert [fault.problem for fault in caught.value.faults] == problems
+
+
+@pytest.mark.parametrize("value", [True, np.True_, [True, False]])
+def test_yes_and_no_are_no_resistances(value: Any) -> None:
+    with pytest.raises(hk.QuantityError, match="R_F is not an array of numbers"):
+        hk.trip_points(tank(), R_F=value)
+
+
+@pytest.mark.parametrize("design", [hk.Stage("inverting"), "x", None])
+def test_only_a_design_has_trip_points(design: Any) -> None:
+    with pytest.raises(hk.InputError, match="design is not a Design"):
+        hk.trip_points(design)
+
+
 def test_overrides_that_are_no_numbers_are_reported_together() -> None:
     bad: dict[str, Any] = {"R_T": "4,7k", "R_B": ["4k7", "5k"], "R_F": [[1, 2], [3]], "V_CC": None}
     with pytest.raises(hk.QuantityError) as caught:

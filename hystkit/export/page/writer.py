@@ -11,8 +11,8 @@ from urllib.parse import quote
 
 from hystkit.base.errors import Fault, InputError
 from hystkit.base.fields import Field, Viewed
+from hystkit.base.files import already_there, write_text
 from hystkit.circuit.design import Design
-from hystkit.export.files import already_there, write_text
 from hystkit.export.page.document import Page
 from hystkit.export.page.static import static_fragment
 
