@@ -9,13 +9,14 @@ from typing import TYPE_CHECKING
 
 import sympy as sp
 
-from hystkit.base.errors import InfeasibleError, UnknownNameError
+from hystkit.base.errors import InfeasibleError, InputError, UnknownNameError
 from hystkit.base.nearest import unknown_name_fault
 from hystkit.circuit.design import Design
+from hystkit.circuit.reading import is_kind, wrong_kind
 from hystkit.circuit.stage import Stage
 from hystkit.symbolic import solving
 from hystkit.symbolic.arrange import by_source
-from hystkit.symbolic.ledger import HIGH, LOW, Definition, Ledger, expand, restrict
+from hystkit.symbolic.ledger import HIGH, LOW, Definition, Ledger, expand, needed, restrict
 from hystkit.symbolic.network import StateLaw, solve_state
 from hystkit.symbolic.printing import fits
 from hystkit.symbolic.shown import Equations
@@ -315,8 +316,14 @@ class SwitchingLaw(Equations):
         ideal = self.ideal if self.is_ideal else None
         if ideal is not None and fits(ideal.upper) and fits(ideal.lower):
             return ((symbol("V_upper"), ideal.upper), (symbol("V_lower"), ideal.lower))
+        return self.named_rows
+
+    @cached_property
+    def named_rows(self) -> tuple[tuple[sp.Symbol, sp.Expr], ...]:
+        """The named quantities that act on the trip points, then both trip points by them."""
         upper, lower = self.named
-        named = ((row.symbol, row.expression) for row in self.definitions)
+        acting, _ = needed(self.named, self.definitions)
+        named = ((row.symbol, row.expression) for row in acting)
         return (*named, (symbol("V_upper"), upper), (symbol("V_lower"), lower))
 
     def latex(self, variant: str = "formula", *, design: Design | None = None) -> str:
@@ -364,6 +371,11 @@ def derive(subject: Stage | Design) -> SwitchingLaw:
     SwitchingLaw
         Both trip points as exact formulas.
 
+    Raises
+    ------
+    InputError
+        If `subject` is neither a stage nor a design.
+
     Notes
     -----
     Holds for any resistive network, static: delays and capacitances are outside the law.
@@ -374,6 +386,10 @@ def derive(subject: Stage | Design) -> SwitchingLaw:
     (R_F*V_REF + R_R*V_OH)/(R_F + R_R)
     """
     stage = subject.stage if isinstance(subject, Design) else subject
+    if not is_kind(stage, Stage):
+        remedy = 'hk.derive(hk.Stage("inverting"))'
+        fault = wrong_kind("subject", stage, "a Stage or a Design", remedy)
+        raise InputError.of("this request", [fault])
     return _derive(stage)
 
 

@@ -11,13 +11,12 @@ from sympy.printing.mathml import MathMLPresentationPrinter
 
 from hystkit.symbolic.law import SwitchingLaw
 from hystkit.symbolic.printing import ordered_terms, width
-from hystkit.symbolic.symbols import split_name
+from hystkit.symbolic.symbols import split_name, split_signs
 
 #: Media type of presentation MathML, in the output of a notebook.
 MIME = "application/mathml-presentation+xml"
 
 _NAMESPACE = "http://www.w3.org/1998/Math/MathML"
-_SIGNS = {"plus": "+", "minus": "\N{MINUS SIGN}"}
 _MINUS = "\N{MINUS SIGN}"
 _TIMES = "\N{INVISIBLE TIMES}"
 #: Letters that the right side of an equation may take beside the pictures of a page.
@@ -32,7 +31,8 @@ class LawMathPrinter(MathMLPresentationPrinter):  # type: ignore[misc]
         letter = self._leaf("mi", base)
         if not subscript:
             return letter
-        return self._inner("msub", letter, self._leaf("mtext", _SIGNS.get(subscript, subscript)))
+        signs, rest = split_signs(subscript)
+        return self._inner("msub", letter, self._leaf("mtext", signs.replace("-", _MINUS) + rest))
 
     def _print_Add(self, expr: sp.Expr, order: str | None = None) -> Any:  # noqa: N802
         return self._terms(ordered_terms(expr))

@@ -364,11 +364,10 @@ def _minus_potential(work: Reduction) -> Potential:
 def _conductance_sum(work: Reduction, node: str) -> tuple[sp.Expr, sp.Expr, sp.Expr]:
     """Conductance sum at an input, the current driven into it, and that current per V_IN."""
     sources = work.sources.get(node, [])
-    total = sp.Add(*(s.branch.g for s in sources), *(link.branch.g for link in work.links))
+    total = sp.Add(*(s.branch.g for s in sources))
     driven = sp.Add(*(s.potential.constant * s.branch.g for s in sources))
     per_signal = sp.Add(*(s.potential.gain * s.branch.g for s in sources))
-    tag = "" if node == "plus" else node
-    named = work.define(f"S_{tag}", total, f"sum of conductances at the {node} input", "S")
+    named = work.define("S_", total, f"sum of conductances at the {node} input", "S")
     return named, driven - work.injections.get(node, sp.S.Zero), per_signal
 
 
@@ -387,23 +386,34 @@ def _solve_apart(work: Reduction, minus: Potential) -> StateLaw:
 
 
 def _solve_coupled(work: Reduction) -> StateLaw:
-    """Solve where a resistor path leads from one input to the other."""
+    """Solve where a resistor path leads from one input to the other.
+
+    Without that path each input is a Thevenin source; V_OS drives a current through it.
+    """
     g = sp.Add(*(link.branch.g for link in work.links))
-    sum_p, driven_p, gain_p = _conductance_sum(work, "plus")
-    sum_n, driven_n, gain_n = _conductance_sum(work, "minus")
-    offset, signal = symbol("V_OS"), symbol("V_IN")
-    rest_p, rest_n = sum_p - g, sum_n - g
-    trip = (rest_n * (driven_p - sum_p * offset) - rest_p * (driven_n + g * offset)) / (
-        rest_p * gain_n - rest_n * gain_p
+    g = work.define("G_plusminus", g, "conductance between plus and minus", "S")
+    sum_p, alone_p = _uncoupled(work, "plus")
+    sum_n, alone_n = _uncoupled(work, "minus")
+    loading = work.define(
+        "K_plusminus", 1 + g / sum_p + g / sum_n, "loading factor between the inputs", "1"
     )
-    current_p, current_n = driven_p + gain_p * signal, driven_n + gain_n * signal
-    determinant = sum_p * sum_n - g**2
-    return StateLaw(
-        trip,
-        work.back_substitute(
-            {
-                "plus": (sum_n * current_p + g * current_n) / determinant,
-                "minus": (g * current_p + sum_p * current_n) / determinant,
-            }
-        ),
+    trip = (symbol("V_OS") * loading - alone_p.constant + alone_n.constant) / (
+        alone_p.gain - alone_n.gain
     )
+    current = g * (alone_p.value - alone_n.value) / loading
+    inputs = {"plus": alone_p.value - current / sum_p, "minus": alone_n.value + current / sum_n}
+    return StateLaw(trip, work.back_substitute(inputs))
+
+
+def _uncoupled(work: Reduction, node: str) -> tuple[sp.Expr, Potential]:
+    """Conductance sum at an input, and its voltage, without the path to the other input."""
+    sources = work.sources.get(node, [])
+    total = sp.Add(*(s.branch.g for s in sources))
+    driven = sp.Add(*(s.potential.constant * s.branch.g for s in sources))
+    driven -= work.injections.get(node, sp.S.Zero)
+    per_signal = sp.Add(*(s.potential.gain * s.branch.g for s in sources))
+    place = f"at the {node} input, taken alone"
+    total = work.define(f"S_{node}", total, f"sum of conductances {place}", "S")
+    constant = work.define(f"E_{node}", driven / total, f"voltage {place}, signal at 0 V", "V")
+    gain = work.define(f"k_{node}", per_signal / total, f"share of the signal {place}", "1")
+    return total, Potential(constant, gain)

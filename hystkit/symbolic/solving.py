@@ -64,13 +64,57 @@ def normalised(formula: sp.Expr, x: sp.Symbol) -> sp.Expr:
     return sp.factor(sp.together(x * formula.diff(x) / formula))
 
 
+# What stands first, and positive, in a difference.
+_LEADING = ("V_OH", "V_upper")
+
+
 def _signed(formula: sp.Expr) -> sp.Expr:
-    """Turn a leading minus into the order of a difference: -(a - b) is b - a."""
+    """Turn differences above and below the bar into their natural order, with few minus signs."""
     number, factors = formula.as_coeff_mul()
-    difference = next((f for f in factors if f.is_Add), None)
-    if number >= 0 or difference is None:
-        return formula
-    return sp.Mul(-number, -difference, *(f for f in factors if f is not difference))
+    turned = []
+    for factor in factors:
+        flip = _is_turned(factor.as_base_exp()[0])
+        turned.append(_negated(factor) if flip else factor)
+        number *= _sign_of_negated(factor) if flip else 1
+    if number < 0:
+        # A leading minus is the other order of a difference that has no natural one.
+        for place, factor in enumerate(turned):
+            base, _ = factor.as_base_exp()
+            if base.is_Add and _leader(base) is None and _sign_of_negated(factor) < 0:
+                number, turned[place] = -number, _negated(factor)
+                break
+    return sp.Mul(number, *turned)
+
+
+def _negated(factor: sp.Expr) -> sp.Expr:
+    """Give a power of a sum with every sign of the sum turned."""
+    base, exponent = factor.as_base_exp()
+    return (-base) ** exponent if exponent.is_Integer else factor
+
+
+def _sign_of_negated(factor: sp.Expr) -> int:
+    """Tell what `_negated` has to be multiplied by to stand for the factor again."""
+    _, exponent = factor.as_base_exp()
+    return -1 if exponent.is_Integer and exponent % 2 else 1
+
+
+def _is_turned(total: sp.Expr) -> bool:
+    """Whether a sum has its leading voltage, or all it has, negative."""
+    if not total.is_Add:
+        return False
+    leader = _leader(total)
+    if leader is not None:
+        return bool(leader.could_extract_minus_sign())
+    return all(term.could_extract_minus_sign() for term in total.args)
+
+
+def _leader(total: sp.Expr) -> sp.Expr | None:
+    """Give the term that decides the order of a sum."""
+    for name in _LEADING:
+        terms = [term for term in total.args if symbol(name) in term.free_symbols]
+        if len(terms) == 1:
+            return terms[0]
+    return None
 
 
 def _bilinear(

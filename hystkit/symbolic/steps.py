@@ -11,7 +11,7 @@ from hystkit.circuit.netlist import Netlist, netlist
 from hystkit.symbolic.law import SwitchingLaw
 from hystkit.symbolic.ledger import HIGH, LOW
 from hystkit.symbolic.network import device_source, fixed
-from hystkit.symbolic.printing import fits, write_expression, write_lines
+from hystkit.symbolic.printing import Letters, fits, write_expression, write_lines
 from hystkit.symbolic.symbols import NON_IDEAL, latex_name, node_symbol
 
 _ORDER = ("plus", "minus")
@@ -61,7 +61,10 @@ def derivation(law: SwitchingLaw) -> tuple[Step, ...]:
 
 
 def equation(
-    left: sp.Symbol, right: sp.Expr, names: dict[sp.Symbol, str] | None = None
+    left: sp.Symbol,
+    right: sp.Expr,
+    names: dict[sp.Symbol, str] | None = None,
+    letters: Letters = (),
 ) -> list[str]:
     """Write an equation on one or more lines of ``align*``.
 
@@ -73,13 +76,15 @@ def equation(
         What it is.
     names : dict, optional
         What stands in place of symbols on the right.
+    letters : tuple of (sympy.Symbol, float), optional
+        Room that each of the names takes, where these are numbers.
 
     Returns
     -------
     list of str
         Lines with their alignment marks.
     """
-    first, *more = write_lines(right, names)
+    first, *more = write_lines(right, names, letters)
     return [f"{latex_name(left.name)} &= {first}", *(f"&\\quad {line}" for line in more)]
 
 

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import re
 from functools import cache
 
 import sympy as sp
@@ -42,7 +43,8 @@ _MEANINGS: dict[str, tuple[str, str]] = {
 #: Non-idealities of the device: zero in the ideal law, symbols in the full one.
 NON_IDEAL = ("R_OH", "R_OL", "I_LK", "V_OS", "I_BP", "I_BN")
 
-_LATEX_SUBSCRIPTS = {"plus": "+", "minus": "-"}
+# Inputs in a subscript, with what the law adds: number and output state.
+_INPUTS = re.compile(r"((?:plus|minus)+)([0-9]*[HL]?)")
 
 
 @cache
@@ -134,5 +136,25 @@ def latex_name(name: str) -> str:
     base, subscript = split_name(name)
     if not subscript:
         return base
-    label = _LATEX_SUBSCRIPTS.get(subscript, rf"\mathrm{{{subscript}}}")
-    return f"{base}_{{{label}}}"
+    signs, rest = split_signs(subscript)
+    label = rf"\mathrm{{{rest}}}" if rest else ""
+    return f"{base}_{{{signs}{label}}}"
+
+
+def split_signs(subscript: str) -> tuple[str, str]:
+    """Split the signs of the inputs off a subscript.
+
+    Parameters
+    ----------
+    subscript : str
+        Such as "plusminusH" or "PU".
+
+    Returns
+    -------
+    tuple of str
+        Such as ("+-", "H") or ("", "PU").
+    """
+    found = _INPUTS.fullmatch(subscript)
+    if found is None:
+        return "", subscript
+    return found[1].replace("plus", "+").replace("minus", "-"), found[2]

@@ -72,8 +72,11 @@ def trip_fields(law: SwitchingLaw, design: Design) -> list[Field]:
     list of Field
         Upper, lower and width.
     """
+    # Quantity by quantity: putting them all into one formula takes far longer.
     values = exact_values(design)
-    upper, lower = (float(trip.xreplace(values)) for trip in (law.upper, law.lower))
+    for left, right in law.named_rows:
+        values[left] = right.xreplace(values)
+    upper, lower = (float(values[symbol(name)]) for name in ("V_upper", "V_lower"))
     signal = design.signal
     fields = []
     for name, volts in (("V_upper", upper), ("V_lower", lower), ("V_width", upper - lower)):

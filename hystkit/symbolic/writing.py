@@ -2,22 +2,32 @@
 
 from __future__ import annotations
 
+import math
+import re
 from functools import lru_cache
 
 import sympy as sp
 
+from hystkit.base.digits import exact_digits, rounded, trip_digits
 from hystkit.base.errors import Fault, InputError, UnknownNameError
 from hystkit.base.nearest import unknown_name_fault
 from hystkit.base.quantity import show_latex
 from hystkit.circuit.design import Design
 from hystkit.symbolic.law import SwitchingLaw
-from hystkit.symbolic.printing import LINE_WIDTH, width
+from hystkit.symbolic.printing import LINE_WIDTH, Letters, fits, width
 from hystkit.symbolic.steps import derivation, equation
-from hystkit.symbolic.symbols import meaning
+from hystkit.symbolic.symbols import meaning, symbol
 from hystkit.symbolic.tables import PartsAndTrips, exact_values
 
-# Room that a result takes at the end of a line, in letters.
-_RESULT_WIDTH = 10.0
+# Room that a number with its unit takes at least, and that the equals sign of a result takes, in
+# letters.
+_NUMBER_WIDTH = 6.0
+_EQUALS_WIDTH = 2.0
+# Digits that no number is written beyond: of a trip, and of what it is computed from.
+_MOST_DIGITS = 9
+_MOST_INNER_DIGITS = 15
+
+Rows = tuple[tuple[sp.Symbol, sp.Expr], ...]
 
 VARIANTS = ("formula", "derivation", "numbers", "table")
 
@@ -78,7 +88,7 @@ def aligned(lines: list[str]) -> str:
 
 
 @lru_cache(maxsize=128)
-def formula(rows: tuple[tuple[sp.Symbol, sp.Expr], ...]) -> str:
+def formula(rows: Rows) -> str:
     r"""Write equations as one ``aligned`` block.
 
     Parameters
@@ -107,18 +117,18 @@ def _align(law: SwitchingLaw) -> str:
 
 
 def _number_lines(law: SwitchingLaw, design: Design) -> list[str]:
-    exact = exact_values(design)
-    units = {row.symbol.name: row.unit for row in law.definitions}
-    shown = {s.name: _number(float(v), meaning(s.name)[1]) for s, v in exact.items()}
+    rows = law.rows
+    shown = _shown(law, design, rows)
+    if rows != law.named_rows and not all(fits(right, _letters(shown)) for _, right in rows):
+        rows = law.named_rows  # numbers take more room than the symbols that they stand for
+        shown = _shown(law, design, rows)
+    letters = _letters(shown)
+    room = dict(letters)
     lines = []
-    for (left, right), template in zip(law.rows, _templates(law), strict=True):
-        exact[left] = right.xreplace(exact)
-        unit = units.get(left.name, "V").replace("1", "")  # a ratio carries no unit
-        value = float(exact[left])
-        shown[left.name] = _number(value, unit)
+    for (left, right), template in zip(rows, _templates(rows, letters), strict=True):
         filled = [_fill(line, shown) for line in template]
-        result = f"= {show_latex(value, unit)}"
-        if len(filled) == 1 and width(right, numeric=True) <= LINE_WIDTH - _RESULT_WIDTH:
+        result = f"= {shown[left].removeprefix(_OPENING).removesuffix(_CLOSING)}"
+        if len(filled) == 1 and width(right, letters) + room[left] + _EQUALS_WIDTH <= LINE_WIDTH:
             filled[0] += f" {result}"
         else:
             filled.append(f"&\\quad {result}")
@@ -126,24 +136,86 @@ def _number_lines(law: SwitchingLaw, design: Design) -> list[str]:
     return lines
 
 
+def _shown(law: SwitchingLaw, design: Design, rows: Rows) -> dict[sp.Symbol, str]:
+    """Write every number of a law so that those shown give those shown further down."""
+    units = {row.symbol: row.unit for row in law.definitions}
+    exact = exact_values(design)
+    given = {s: _decimal(v, exact_digits(float(v), _MOST_DIGITS)) for s, v in exact.items()}
+    shown = {s: _number(v, meaning(s.name)[1], _MOST_DIGITS) for s, v in given.items()}
+    digits, values = _consistent(rows, exact, given)
+    for left, _ in rows:
+        unit = units.get(left, "V").replace("1", "")  # a ratio carries no unit
+        shown[left] = _number(values[left], unit, digits[left])
+    return shown
+
+
+def _consistent(
+    rows: Rows, exact: dict[sp.Symbol, sp.Rational], given: dict[sp.Symbol, sp.Rational]
+) -> tuple[dict[sp.Symbol, int], dict[sp.Symbol, sp.Rational]]:
+    """Give the digits of each row, and the values computed from numbers with these digits.
+
+    The trips get as many as show their width; what they are computed from as many as it takes to
+    find the same trips from the numbers written down.
+    """
+    trips = [left for left, _ in rows[-2:]]
+    wanted = _evaluated(rows, exact, {})
+    upper, lower = (float(wanted[trip]) for trip in trips)
+    final = {trip: trip_digits(float(wanted[trip]), upper - lower, _MOST_DIGITS) for trip in trips}
+    for inner in range(max(final.values()), _MOST_INNER_DIGITS + 1):
+        digits = {left: inner for left, _ in rows} | final
+        values = _evaluated(rows, given, digits)
+        if all(values[trip] == _decimal(wanted[trip], final[trip]) for trip in trips):
+            break
+    return digits, values
+
+
+def _evaluated(
+    rows: Rows, known: dict[sp.Symbol, sp.Rational], digits: dict[sp.Symbol, int]
+) -> dict[sp.Symbol, sp.Rational]:
+    """Evaluate row by row, each rounded where digits are given."""
+    values = dict(known)
+    for left, right in rows:
+        value = right.xreplace(values)
+        values[left] = _decimal(value, digits[left]) if left in digits else value
+    return values
+
+
+def _decimal(value: sp.Rational, digits: int) -> sp.Rational:
+    """Round to a number that is exactly what its digits say."""
+    return sp.Rational(repr(rounded(float(value), digits)))
+
+
+def _letters(shown: dict[sp.Symbol, str]) -> Letters:
+    """Tell how much room each number takes, in whole letters so that few templates are made."""
+    return tuple((s, max(_NUMBER_WIDTH, math.ceil(0.75 * _length(t)))) for s, t in shown.items())
+
+
+def _length(text: str) -> int:
+    """Count the signs that LaTeX sets for a number with its unit."""
+    return len(re.sub(r"\\[A-Za-z]+", "x", re.sub(r"\\(?:left|right|mathrm|,)|[{} ]", "", text)))
+
+
 @lru_cache(maxsize=128)
-def _templates(law: SwitchingLaw) -> list[list[str]]:
+def _templates(rows: Rows, letters: Letters) -> list[list[str]]:
     """Write each row once, with a mark in place of every symbol."""
     return [
-        equation(left, right, {s: f"@{s.name}@" for s in right.free_symbols})
-        for left, right in law.rows
+        equation(left, right, {s: f"@{s.name}@" for s in right.free_symbols}, letters)
+        for left, right in rows
     ]
 
 
-def _fill(template: str, shown: dict[str, str]) -> str:
+def _fill(template: str, shown: dict[sp.Symbol, str]) -> str:
     parts = template.split("@")
-    parts[1::2] = (shown[name] for name in parts[1::2])
+    parts[1::2] = (shown[symbol(name)] for name in parts[1::2])
     return "".join(parts)
 
 
-def _number(value: float, unit: str) -> str:
-    text = show_latex(value, unit)
-    return f"\\left({text}\\right)" if value < 0 else text
+_OPENING, _CLOSING = "\\left(", "\\right)"
+
+
+def _number(value: sp.Rational, unit: str, digits: int) -> str:
+    text = show_latex(float(value), unit, digits)
+    return f"{_OPENING}{text}{_CLOSING}" if value < 0 else text
 
 
 def _design_fault(law: SwitchingLaw, variant: str, design: Design | None) -> Fault:

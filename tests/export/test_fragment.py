@@ -14,17 +14,27 @@ import hystkit as hk
 from hystkit.base.quantity import show_latex
 from hystkit.circuit.demo import header_tank
 from hystkit.symbolic.symbols import latex_name
-from tests.export.designs import AWKWARD, every_design, full, ladder, stuck
+from tests.export.designs import AWKWARD, DEVICE, bare, every_design, full, ladder, stuck
+from tests.symbolic.coupled import every_coupled
 
-DESIGNS = every_design()
-PAGE = r"""\documentclass[a4paper]{article}
+#: The two other corners of parts and device, a narrow band, and circuits of one's own.
+DESIGNS = {
+    **every_design(),
+    **{f"{s.title}, bare, device": bare(s).with_device(**vars(DEVICE)) for s in hk.Stage.all()},
+    **{
+        f"{s.title}, all parts, ideal": full(s).with_device(**vars(hk.Device()))
+        for s in hk.Stage.all()
+    },
+    **every_coupled(),
+}
+PAGE = r"""\documentclass[a4paper,11pt]{article}
 \usepackage[margin=25mm]{geometry}
 \usepackage{amsmath}
 \begin{document}
 %s
 \end{document}
 """
-SYMBOL = re.compile(r"[A-Za-z]_\{(?:\\mathrm\{\w+\}|[+-])\}")
+SYMBOL = re.compile(r"[A-Za-z]_\{(?:\\mathrm\{\w+\}|[+-]+(?:\\mathrm\{\w+\})?)\}")
 # A line of TeX's log about a box that sticks out of the text.
 OVERFULL = re.compile(r"^Overfull \\[hv]box \(([0-9.]+)pt too (?:wide|high)\).*", re.MULTILINE)
 

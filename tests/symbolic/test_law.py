@@ -300,3 +300,9 @@ def test_formulas_do_not_depend_on_the_order_of_hashes() -> None:
     assert all(process.returncode == 0 for process in started)
     assert first == second
     assert first.count(b"\n") > 200
+
+
+@pytest.mark.parametrize("subject", ["x", None, ["inverting"]])
+def test_only_a_stage_or_a_design_has_a_law(subject: Any) -> None:
+    with pytest.raises(hk.InputError, match="subject is not a Stage or a Design"):
+        hk.derive(subject)

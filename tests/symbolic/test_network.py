@@ -14,11 +14,14 @@ from hystkit.circuit.elements import FIXED_NODES
 from hystkit.circuit.netlist import netlist
 from hystkit.numeric.compile import kernel
 from hystkit.symbolic.ledger import HIGH, LOW
+from hystkit.symbolic.printing import fits
+from hystkit.symbolic.symbols import NON_IDEAL
 from tests.circuit.strategies import BRIDGE, TAPPED, VARIANTS
 from tests.numeric.circuits import random_stages, symbol_names
+from tests.symbolic.coupled import COUPLED
 
 Values = Mapping[str, Fraction]
-CUSTOM = (TAPPED, BRIDGE, *random_stages(20, seed=11))
+CUSTOM = (TAPPED, BRIDGE, *COUPLED, *random_stages(20, seed=11))
 
 
 def rationals(stage: hk.Stage, ideal_output: bool) -> dict[str, Fraction]:
@@ -99,7 +102,7 @@ def test_names_of_nodes_and_definitions_never_collide() -> None:
     """Nodes named like the marks of states and like each other's concatenations."""
     nodes = ("H", "L", "2", "a", "b", "ab", "aH", "aL")
     inner = [f"n{node}" for node in nodes]
-    inner[:2] = ["H", "L"]
+    inner[0] = "H"
     elements = [hk.Resistor(f"R_{n}", node, "plus") for n, node in enumerate(inner)]
     elements += [hk.Resistor(f"R_o{n}", "out", node) for n, node in enumerate(inner)]
     elements += [hk.Resistor(f"R_g{n}", node, "cc") for n, node in enumerate(inner)]
@@ -121,3 +124,17 @@ def test_a_definition_uses_only_what_stands_before_it() -> None:
         for row in hk.derive(stage).definitions:
             assert {s.name for s in row.expression.free_symbols} <= names
             names.add(row.symbol.name)
+
+
+@pytest.mark.parametrize("stage", COUPLED, ids=lambda stage: str(stage.name))
+def test_trips_of_coupled_inputs_take_one_line(stage: hk.Stage) -> None:
+    law = hk.derive(stage)
+    for each in (law, law.without(NON_IDEAL)):
+        assert all(fits(trip) for trip in each.named)
+
+
+def test_what_the_trips_do_not_need_is_not_written_down() -> None:
+    law = hk.derive(COUPLED[0])
+    names = {left.name for left, _ in law.without(NON_IDEAL).rows}
+    assert not [name for name in names if name.startswith(("K", "G"))]  # V_OS alone needs them
+    assert {"K_plusminusH", "G_plusminus"} <= {left.name for left, _ in law.rows}

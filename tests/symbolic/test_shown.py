@@ -10,7 +10,7 @@ from IPython.core.formatters import DisplayFormatter
 import hystkit as hk
 from hystkit.circuit.demo import header_tank
 from hystkit.symbolic.law import TripFormulas
-from hystkit.symbolic.mathml import MIME
+from hystkit.symbolic.mathml import MIME, symbol_mathml
 from tests.export.designs import ladder
 from tests.project.source import run_python
 
@@ -63,3 +63,8 @@ def test_mathml_is_the_same_in_every_process() -> None:
     )
     here = ascii(hk.derive(header_tank())._repr_mimebundle_()[MIME])
     assert run_python(code).strip() == here
+
+
+def test_signs_of_the_inputs_stand_in_mathml() -> None:
+    assert symbol_mathml("G_plusminusH").count("<mtext>+\N{MINUS SIGN}H</mtext>") == 1
+    assert "<mtext>plusX</mtext>" in symbol_mathml("R_plusX")

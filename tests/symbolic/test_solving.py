@@ -110,3 +110,20 @@ def test_normalised_derivative() -> None:
     x, y = symbol("R_1"), symbol("R_2")
     assert normalised(x**3 * y, x) == 3
     assert normalised(x / (x + y), x) == y / (x + y)
+
+
+def test_differences_stand_in_their_natural_order() -> None:
+    law = hk.derive(hk.Stage("non-inverting", reference="source"))
+    r_i, upper, lower, high, low = map(symbol, ("R_I", "V_upper", "V_lower", "V_OH", "V_OL"))
+    (found,) = law.solve_for("R_F", "V_REF")
+    assert found["R_F"].args == (r_i * (high - low) / (upper - lower)).args
+    turned = ((low - high, "-V_OH + V_OL"), (lower - upper, "-V_upper + V_lower"))
+    shunted = hk.Stage("non-inverting", reference="source", including=("R_G",))
+    for stage in (*hk.Stage.all(), shunted):
+        for pair in combinations(stage.parts, 2):
+            if stage.output != "push-pull" or (stage != shunted and only_ratio_counts(stage, pair)):
+                continue
+            for formula in (f for each in hk.derive(stage).solve_for(*pair) for f in each.values()):
+                sums = {factor.as_base_exp()[0] for factor in formula.as_ordered_factors()}
+                assert not [text for wrong, text in turned if wrong in sums], formula
+                assert not formula.as_coeff_Mul()[0].is_negative, formula

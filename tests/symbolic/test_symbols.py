@@ -48,6 +48,11 @@ def test_symbols_of_custom_circuits() -> None:
         ("R", "R"),
         ("V_plus", "V_{+}"),
         ("V_minus", "V_{-}"),
+        ("G_plusminus", "G_{+-}"),
+        ("S_minusH", r"S_{-\mathrm{H}}"),
+        ("G_plusminus2L", r"G_{+-\mathrm{2L}}"),
+        ("G_tapminus", r"G_{\mathrm{tapminus}}"),
+        ("R_plusX", r"R_{\mathrm{plusX}}"),
     ],
 )
 def test_latex_names(name: str, latex: str) -> None:
