@@ -1,6 +1,7 @@
-"""Files for the report: LaTeX to input, and everything about a design in one folder."""
+"""Files for reports and wikis: LaTeX to input, a folder about a design, a notebook to read."""
 
 from hystkit.export.folder import write_folder
 from hystkit.export.fragment import tex, write_tex
+from hystkit.export.notebook.publish import publish
 
-__all__ = ["tex", "write_folder", "write_tex"]
+__all__ = ["publish", "tex", "write_folder", "write_tex"]

@@ -14,25 +14,6 @@ from hystkit.symbolic.symbols import NON_IDEAL, latex_name, meaning, symbol
 
 
 @dataclass(frozen=True)
-class SymbolTable(Viewed):
-    """Every symbol of a law with its meaning and unit.
-
-    Attributes
-    ----------
-    law : SwitchingLaw
-        Whose symbols.
-    """
-
-    law: SwitchingLaw
-
-    def _fields(self) -> Sequence[Field]:
-        return [
-            Field(name, text, "", f"[{unit}]" if unit else "", latex_name(name))
-            for name, (text, unit) in self.law.symbols.items()
-        ]
-
-
-@dataclass(frozen=True)
 class PartsAndTrips(Viewed):
     """The values of a design and the trip points that its law gives.
 

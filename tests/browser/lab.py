@@ -5,12 +5,13 @@ from __future__ import annotations
 import json
 import os
 import secrets
+import shutil
 import signal
 import socket
 import subprocess
 import sys
 import time
-from collections.abc import Iterator, Sequence
+from collections.abc import Iterable, Iterator, Sequence
 from contextlib import contextmanager, suppress
 from dataclasses import dataclass
 from pathlib import Path
@@ -37,19 +38,37 @@ _IDLE = """() => {
 }"""
 
 
+_SETTINGS: dict[str, dict[str, object]] = {
+    # Cells out of sight would not be in the page, and not in a picture of it.
+    "notebook-extension/tracker": {"windowingMode": "none"},
+    "apputils-extension/notification": {"fetchNews": "false", "checkForUpdates": False},
+}
+
+
 @dataclass(frozen=True)
 class Lab:
-    """A running server with one notebook."""
+    """A running server with its notebooks."""
 
     url: str
     token: str
 
-    def open(self, page: Page) -> None:
-        """Open the notebook, wait for its kernel and run all cells."""
-        page.goto(f"{self.url}/lab/tree/sheet.ipynb?token={self.token}&reset")
+    def open(self, page: Page, name: str = "sheet.ipynb", *, run: bool = True) -> None:
+        """Open a notebook, wait for its kernel and run all cells.
+
+        Parameters
+        ----------
+        page : Page
+            Where it is opened.
+        name : str
+            File name of the notebook.
+        run : bool
+            False to look at the stored outputs.
+        """
+        page.goto(f"{self.url}/lab/tree/{name}?token={self.token}&reset")
         page.wait_for_selector(".jp-CodeCell", timeout=60_000)
-        page.wait_for_function(_IDLE, timeout=60_000)
-        self.command(page, "notebook:run-all-cells")
+        if run:
+            page.wait_for_function(_IDLE, timeout=60_000)
+            self.command(page, "notebook:run-all-cells")
 
     def command(self, page: Page, name: str, **arguments: str) -> None:
         """Run a command of JupyterLab."""
@@ -59,22 +78,33 @@ class Lab:
 
 
 @contextmanager
-def jupyterlab(folder: Path, cells: Sequence[str]) -> Iterator[Lab]:
-    """Run JupyterLab on a notebook with these cells.
+def jupyterlab(
+    folder: Path, cells: Sequence[str] = (), notebooks: Iterable[Path] = ()
+) -> Iterator[Lab]:
+    """Run JupyterLab on copies of notebooks.
 
     Parameters
     ----------
     folder : Path
-        Empty; holds the notebook and all settings.
+        Empty; holds the notebooks and all settings.
     cells : sequence of str
-        Code.
+        Code of a notebook "sheet.ipynb".
+    notebooks : iterable of Path
+        Further ones.
     """
     root = folder / "root"
     root.mkdir()
-    (root / "sheet.ipynb").write_text(json.dumps(_notebook(cells)), encoding="utf-8")
+    if cells:
+        (root / "sheet.ipynb").write_text(json.dumps(_notebook(cells)), encoding="utf-8")
+    for notebook in notebooks:
+        shutil.copy(notebook, root)
     homes = {name: str(folder / name.lower()) for name in _HOME}
     for home in homes.values():
         Path(home).mkdir()
+    for plugin, values in _SETTINGS.items():
+        path = Path(homes["JUPYTERLAB_SETTINGS_DIR"]) / "@jupyterlab" / plugin
+        path.parent.mkdir(parents=True)
+        path.with_suffix(".jupyterlab-settings").write_text(json.dumps(values), encoding="utf-8")
     repository = str(Path(__file__).parents[2])
     found = os.environ.get("PYTHONPATH")
     path = os.pathsep.join([repository, found] if found else [repository])
@@ -143,7 +173,7 @@ def _end(server: subprocess.Popen[bytes]) -> None:
     with suppress(ProcessLookupError):
         os.killpg(server.pid, signal.SIGTERM)
     try:
-        server.wait(10)
+        server.wait(3)  # it would wait longer for kernels that have ended with it
     except subprocess.TimeoutExpired:
         os.killpg(server.pid, signal.SIGKILL)
         server.wait(10)

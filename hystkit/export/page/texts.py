@@ -68,7 +68,6 @@ def _range(levels: Levels, span: Interval) -> str:
     return f"{low.removesuffix(short_unit(signal)).rstrip()} to {high}"
 
 
-
 def value_rows(design: Design) -> list[tuple[str, str, str, str]]:
     """Write the table of values.
 
