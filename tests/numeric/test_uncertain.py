@@ -69,7 +69,7 @@ def test_both_rails_of_a_split_supply_are_uncertain() -> None:
 
 def test_a_part_that_would_drift_away_is_named() -> None:
     with pytest.raises(hk.DesignError, match="R_F would drift to zero"):
-        hk.spread(with_part(hk.Part("100k", tempco=100)), temperature=(-20, 60))
+        hk.spread(with_part(hk.Part("100k", tempco=0.05)), temperature=(-20, 60))
 
 
 def test_every_bad_argument_is_named() -> None:
