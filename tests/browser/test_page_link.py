@@ -99,15 +99,18 @@ def test_opening_a_link_in_place_changes_the_page(tank: Watched) -> None:
 
 def test_copying(chromium: Browser, tmp_path: Path) -> None:
     written = hk.write_page(header_tank(), tmp_path / "tank.html")
+    # The clipboard answers later than the click.
+    said = "document.querySelector('.hk-said').textContent === '{}'"
     with watched(chromium, own="file://", permissions=["clipboard-read"]) as seen:
         page = seen.page
         page.goto(written.path.as_uri())
         page.locator("[data-do=latex]").click()
-        assert page.locator(".hk-said").inner_text() == "LaTeX copied"
+        until(page, said.format("LaTeX copied"))
         law = hk.derive(header_tank()).for_design(header_tank())
         assert page.evaluate("navigator.clipboard.readText()") == law.latex()
         type_in(page, "R_T", "47k")
         page.locator("[data-do=link]").click()
+        until(page, said.format("link copied"))
         link = page.evaluate("navigator.clipboard.readText()")
         assert link.startswith(written.path.as_uri() + "#hk")
         assert "R_T=47k~0.01" in link
