@@ -33,6 +33,27 @@ def trip_digits(value: float, width: float, most: int = 7) -> int:
     return min(max(wanted, 4), most)
 
 
+def span_digits(low: float, high: float) -> int:
+    """Return with how many digits the ends of an interval are written to be told apart.
+
+    Parameters
+    ----------
+    low, high : float
+        Both ends, in one unit.
+
+    Returns
+    -------
+    int
+        Four at least; two digits of their distance show in the ends.
+
+    Examples
+    --------
+    >>> span_digits(2.261, 2.311), span_digits(2.4975, 2.5025)
+    (4, 5)
+    """
+    return trip_digits(max(abs(low), abs(high)), high - low)
+
+
 def exact_digits(value: float, most: int = 9) -> int:
     """Return with how many digits a number is written so that it reads back the same.
 

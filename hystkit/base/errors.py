@@ -8,7 +8,9 @@
     │   ├── DesignError                         a stage or design that cannot be built
     │   ├── UnknownNameError (KeyError)         a name that does not exist here
     │   ├── RecordError                         a design file that cannot be read
-    │   └── SignalError                         a sensor description that cannot be used
+    │   ├── NoiseModelError                     noise that has no finite crossing rate
+    │   ├── SignalError                         a sensor description that cannot be used
+    │   └── PlantError                          a plant that cannot be used
     ├── InfeasibleError (ValueError)            no real part values give what was asked for
     │   └── InfeasibleWidthError                ... because of the width
     └── OutputExistsError (FileExistsError)     would overwrite a file
@@ -142,8 +144,16 @@ class RecordError(InputError):
     """A design file that cannot be read."""
 
 
+class NoiseModelError(InputError):
+    """Noise whose crossing rate is not finite, or cannot be told from what is given."""
+
+
 class SignalError(InputError):
     """A sensor description that cannot be used."""
+
+
+class PlantError(InputError):
+    """A plant description that cannot be used."""
 
 
 class InfeasibleError(HystkitError, ValueError):

@@ -7,6 +7,7 @@ from abc import ABC, abstractmethod
 from collections.abc import Callable, Sequence
 from dataclasses import dataclass
 
+from hystkit.base.digits import span_digits
 from hystkit.base.quantity import show, show_latex
 
 Value = float | bool | str | tuple[float, float] | None
@@ -29,6 +30,8 @@ class Field:
         A remark to stand beside it.
     latex : str, optional
         The label in LaTeX math, such as ``V_{UT}``; `label` is used where it is empty.
+    digits : int, default 4
+        Significant digits of a number; the ends of an interval get as many as tell them apart.
     """
 
     label: str
@@ -36,6 +39,7 @@ class Field:
     unit: str = ""
     note: str = ""
     latex: str = ""
+    digits: int = 4
 
     @property
     def shown(self) -> str:
@@ -45,14 +49,16 @@ class Field:
     @property
     def shown_latex(self) -> str:
         """The value with its unit, rounded for display, as LaTeX text."""
-        return self._rendered(lambda number, unit: f"${show_latex(number, unit)}$", escape_latex)
+        return self._rendered(lambda *given: f"${show_latex(*given)}$", escape_latex)
 
     @property
     def label_latex(self) -> str:
         """The label as LaTeX text."""
         return f"${self.latex}$" if self.latex else escape_latex(self.label)
 
-    def _rendered(self, number: Callable[[float, str], str], words: Callable[[str], str]) -> str:
+    def _rendered(
+        self, number: Callable[[float, str, int], str], words: Callable[[str], str]
+    ) -> str:
         value = self.value
         if value is None:
             return words("—")
@@ -60,8 +66,10 @@ class Field:
             return words("yes" if value else "no")
         if isinstance(value, str):
             return words(value)
-        ends = value if isinstance(value, tuple) else (value,)
-        return " to ".join(number(end, self.unit) for end in ends)
+        if not isinstance(value, tuple):
+            return number(value, self.unit, self.digits)
+        digits = span_digits(*value)
+        return " to ".join(number(end, self.unit, digits) for end in value)
 
 
 class Viewed(ABC):

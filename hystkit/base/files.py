@@ -8,6 +8,9 @@ from pathlib import Path
 
 from hystkit.base.errors import InputError, OutputExistsError
 
+#: What to do where a file exists already.
+ANOTHER_NAME = "another name, or overwrite=True"
+
 
 def write_text(path: Path, text: str, *, overwrite: bool = False) -> Path:
     """Write a text file, whole or not at all.
@@ -33,21 +36,52 @@ def write_text(path: Path, text: str, *, overwrite: bool = False) -> Path:
     InputError
         If it cannot be written: no such folder, a folder in its place, no room.
     """
+    try:
+        data = text.encode()
+    except UnicodeError as error:
+        raise _not_writable(path, error) from None
+    return write_bytes(path, data, overwrite=overwrite)
+
+
+def write_bytes(path: Path, data: bytes, *, overwrite: bool = False) -> Path:
+    """Write a file, whole or not at all.
+
+    Parameters
+    ----------
+    path : Path
+        File to write.
+    data : bytes
+        What to write.
+    overwrite : bool, default False
+        Whether an existing file may be replaced.
+
+    Returns
+    -------
+    Path
+        The file.
+
+    Raises
+    ------
+    OutputExistsError
+        If the file exists and `overwrite` is false.
+    InputError
+        If it cannot be written: no such folder, a folder in its place, no room.
+    """
     if _is(path.is_file) and not overwrite:
-        raise already_there(path, "another name, or overwrite=True")
+        raise already_there(path, ANOTHER_NAME)
     # A crash while writing must not leave half a file in place of a whole one.
     partial = path.with_name(f".{path.name}.{os.getpid()}.partial")
     try:
-        partial.write_text(text, encoding="utf-8", newline="\n")
+        partial.write_bytes(data)
         partial.replace(path)
-    except (OSError, UnicodeError) as error:
+    except OSError as error:
         raise _not_writable(path, error) from None
     finally:
         _removed(partial)
     return path
 
 
-def check_free(path: Path, remedy: str) -> None:
+def check_free(path: Path, remedy: str, *, overwrite: bool = False) -> None:
     """Refuse an output that exists or can never exist, before anything is worked out for it.
 
     Parameters
@@ -56,15 +90,17 @@ def check_free(path: Path, remedy: str) -> None:
         File or folder to make; folders above it may be missing yet.
     remedy : str
         What to do where it exists already.
+    overwrite : bool, default False
+        Whether what exists may be replaced.
 
     Raises
     ------
     OutputExistsError
-        If it exists.
+        If it exists and `overwrite` is false.
     InputError
         If one of the folders above it is a file.
     """
-    if _is(path.exists) or _is(path.is_symlink):
+    if not overwrite and (_is(path.exists) or _is(path.is_symlink)):
         raise already_there(path, remedy)
     above = next((each for each in path.parents if _is(each.exists)), None)
     if above is not None and not _is(above.is_dir):

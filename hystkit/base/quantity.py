@@ -13,6 +13,7 @@ from collections.abc import Mapping
 from decimal import Decimal
 from numbers import Real
 
+from hystkit.base.digits import span_digits
 from hystkit.base.errors import QuantityError
 from hystkit.base.misread import explain
 from hystkit.base.units import Unit, latex_unit, unit_of
@@ -131,6 +132,25 @@ def show(value: float, unit: str = "", digits: int = 4) -> str:
         return "—"
     number, shown = _scaled(value, unit, digits)
     return f"{number} {shown}".rstrip()
+
+
+def show_span(low: float, high: float, unit: str = "") -> str:
+    """Return both ends of an interval, with digits enough to tell them apart.
+
+    Parameters
+    ----------
+    low, high : float
+        In SI units.
+    unit : str, optional
+        Their unit.
+
+    Examples
+    --------
+    >>> show_span(2.4975, 2.5025, "V")
+    '2.4975 V to 2.5025 V'
+    """
+    digits = span_digits(low, high)
+    return " to ".join(show(end, unit, digits) for end in (low, high))
 
 
 def show_latex(value: float, unit: str = "", digits: int = 4) -> str:

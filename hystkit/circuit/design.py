@@ -6,7 +6,7 @@ import math
 from collections.abc import Mapping
 from dataclasses import dataclass, fields, replace
 from functools import cached_property
-from typing import Any, TypeVar
+from typing import Any
 
 from hystkit.base.errors import DesignError, Fault, UnknownNameError
 from hystkit.base.frozen import Named
@@ -22,7 +22,6 @@ from hystkit.circuit.signals import Signal
 from hystkit.circuit.stage import Stage
 
 PartLike = Part | Quantity
-Rebuilt = TypeVar("Rebuilt", Supply, Device)
 
 
 @dataclass(frozen=True)
@@ -166,7 +165,8 @@ class Design:
         Design
             The changed copy.
         """
-        return self._with(supply=_replaced(self.supply, "supply", changes))
+        _check_fields(self.supply, "supply", changes)
+        return self._with(supply=replace(self.supply, **changes))
 
     def with_device(self, **changes: Any) -> Design:
         """Give a copy with another device.
@@ -179,9 +179,10 @@ class Design:
         Returns
         -------
         Design
-            The changed copy.
+            The changed copy; values that are given are no longer typical of a class.
         """
-        return self._with(device=_replaced(self.device, "device", changes))
+        _check_fields(self.device, "device", changes)
+        return self._with(device=self.device.with_values(**changes))
 
     def with_signal(self, signal: Signal | None) -> Design:
         """Give a copy with another signal description.
@@ -284,9 +285,8 @@ def _changed_part(
     return old if math.isnan(number) else old.with_value(number)
 
 
-def _replaced(subject: Rebuilt, kind: str, changes: Mapping[str, Any]) -> Rebuilt:
+def _check_fields(subject: Supply | Device, kind: str, changes: Mapping[str, Any]) -> None:
     known = [field.name for field in fields(subject)]
     faults = [unknown_name_fault(f"field of a {kind}", n, known) for n in changes if n not in known]
     if faults:
         raise UnknownNameError.of("these changes", faults)
-    return replace(subject, **changes)

@@ -2,8 +2,9 @@
 
 from __future__ import annotations
 
-from collections.abc import Mapping
-from dataclasses import dataclass, fields
+from collections.abc import Iterable, Mapping
+from dataclasses import dataclass, fields, replace
+from typing import Any
 
 from hystkit.base.errors import DesignError, Fault
 from hystkit.base.frozen import Named
@@ -24,6 +25,8 @@ LAW_FIELDS = (
     "bias_plus",
     "bias_minus",
 )
+#: Mark of a device with values that belong to a class, and to no device that was chosen.
+TYPICAL = "typical values, to be replaced"
 UNITS = {
     "drop_high": "V",
     "drop_low": "V",
@@ -36,7 +39,7 @@ UNITS = {
     "delay": "s",
     "common_mode_low": "V",
     "common_mode_high": "V",
-    "offset_drift": "V",
+    "offset_drift": "V/K",
     "gain": "",
     "source_current": "A",
     "sink_current": "A",
@@ -76,6 +79,9 @@ class Device:
         the field itself is the typical value between them.
     name : str, default ""
         Generic name, such as "open-collector quad comparator class".
+    typical : collection of str, optional
+        Fields whose values, with their limits, are typical of a class of devices, and wait to be
+        replaced from the datasheet of the device itself; see `hystkit.device_classes`.
 
     Raises
     ------
@@ -100,6 +106,7 @@ class Device:
     sink_current: float | None = None
     limits: Named[tuple[float, float]] = Named()  # noqa: RUF009 - immutable
     name: str = ""
+    typical: tuple[str, ...] = ()
 
     # Text such as "20m" is accepted for every number; the fields hold floats.
     def __init__(
@@ -121,6 +128,7 @@ class Device:
         sink_current: Quantity | None = None,
         limits: Mapping[str, tuple[Quantity, Quantity]] | None = None,
         name: str = "",
+        typical: Iterable[str] = (),
     ) -> None:
         given = locals()
         faults: list[Fault] = []
@@ -136,6 +144,7 @@ class Device:
             faults.append(wrong_kind("limits", limits, "a mapping of names", example))
             limits = None
         set_frozen(self, "limits", _read_limits(faults, limits or {}, self))
+        set_frozen(self, "typical", _read_typical(faults, typical))
         if faults:
             raise DesignError.of("this device", faults)
 
@@ -143,6 +152,38 @@ class Device:
     def law_fields(self) -> dict[str, float]:
         """What enters the switching law, by field name."""
         return {name: getattr(self, name) for name in LAW_FIELDS}
+
+    @property
+    def title(self) -> str:
+        """Name, with a mark where values of the device are typical of a class only."""
+        mark = TYPICAL if self.typical else ""
+        return f"{self.name} ({mark})" if self.name and mark else self.name or mark
+
+    def with_values(self, **changes: Any) -> Device:
+        """Give a copy with other values.
+
+        Parameters
+        ----------
+        **changes : float, str or None
+            Fields of the device.
+
+        Returns
+        -------
+        Device
+            A value that is given is no longer typical of a class; the limits that the class gave
+            it go with it, unless `limits` are given too.
+
+        Raises
+        ------
+        DesignError
+            As for a new device.
+        """
+        replaced = {name for name in self.typical if name in changes}
+        kept: dict[str, Any] = {
+            "typical": [name for name in self.typical if name not in replaced],
+            "limits": {n: pair for n, pair in self.limits.items() if n not in replaced},
+        }
+        return replace(self, **(kept | changes))
 
 
 def _device_number(faults: list[Fault], name: str, value: Quantity) -> float:
@@ -191,3 +232,18 @@ def _read_limits(
             )
         read_pairs[name] = (low, high)
     return Named(read_pairs)
+
+
+def _read_typical(faults: list[Fault], typical: Iterable[str]) -> tuple[str, ...]:
+    if isinstance(typical, str) or not is_kind(typical, Iterable):
+        example = 'typical=("offset", "drop_low")'
+        faults.append(wrong_kind("typical", typical, "a collection of field names", example))
+        return ()
+    names = tuple(typical)
+    faults += [
+        unknown_name_fault("device field with a value", str(name), tuple(UNITS))
+        for name in names
+        if name not in UNITS
+    ]
+    # In one order, so that devices with the same marks are equal.
+    return tuple(name for name in UNITS if name in names)

@@ -146,7 +146,7 @@ def to_record(design: Design) -> dict[str, Any]:
         "stage": _stage_record(design.stage),
         "parts": {name: asdict(part) for name, part in design.parts.items()},
         "supply": asdict(design.supply),
-        "device": {**vars(design.device), "limits": dict(design.device.limits)},
+        "device": {name: _as_json(value) for name, value in vars(design.device).items()},
         "levels": {name: asdict(part) for name, part in design.levels.items()},
         "signal": None if signal is None else plain(signal),
     }
@@ -197,6 +197,12 @@ def _rebuilt(record: Any, source: str, faults: list[Fault]) -> Design:
     if faults:
         raise RecordError.of(source, faults)
     return design
+
+
+def _as_json(value: Any) -> Any:
+    if isinstance(value, Mapping):
+        return dict(value)
+    return list(value) if isinstance(value, tuple) else value
 
 
 def _stage_record(stage: Stage) -> dict[str, Any]:

@@ -149,8 +149,9 @@ def _results(summary: Summary) -> Iterator[str]:
     for name, volts in summary.trips.items():
         notes = filter(None, (summary.quantity(name), summary.interval(name)))
         text = escape_latex("; ".join(notes))
+        shown = show_latex(volts, "V", summary.texts.digits(name))
         yield (
-            rf"\noindent ${latex_name(f'V_{name}')} = {show_latex(volts, 'V')}$"
+            rf"\noindent ${latex_name(f'V_{name}')} = {shown}$"
             rf"{f' ({text})' if text else ''}\par"
         )
 

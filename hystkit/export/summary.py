@@ -11,8 +11,9 @@ from typing import Any
 from hystkit import __version__
 from hystkit.base.errors import DesignError
 from hystkit.base.fields import Field, Viewed
-from hystkit.base.quantity import show
+from hystkit.base.quantity import show_span
 from hystkit.circuit.design import Design
+from hystkit.circuit.trip_texts import TripTexts
 from hystkit.numeric.levels import levels
 from hystkit.numeric.views import Interval, Levels
 from hystkit.symbolic.symbols import latex_name, meaning
@@ -52,6 +53,11 @@ class Summary(Viewed):
         """Everything of the design on its volt axis."""
         return levels(self.design)
 
+    @cached_property
+    def texts(self) -> TripTexts:
+        """The trip points as they are written."""
+        return TripTexts(self.levels.upper, self.levels.lower, self.design.signal)
+
     @property
     def heading(self) -> str:
         """The name of the design, where it has one, and its form."""
@@ -60,7 +66,7 @@ class Summary(Viewed):
     @property
     def trips(self) -> dict[str, float]:
         """Upper, lower, width and middle [V]."""
-        return {name: getattr(self.levels, name) for name in ("upper", "lower", "width", "middle")}
+        return dict(self.texts.volts)
 
     @property
     def intervals(self) -> dict[str, Interval]:
@@ -71,11 +77,7 @@ class Summary(Viewed):
     @property
     def quantities(self) -> dict[str, float]:
         """Upper, lower and width in the signal's own unit; none without a signal."""
-        signal = self.design.signal
-        if signal is None:
-            return {}
-        upper, lower = (float(signal.quantity(v)) for v in (self.levels.upper, self.levels.lower))
-        return {"upper": upper, "lower": lower, "width": abs(upper - lower)}
+        return {name: value for name, value in self.texts.quantities.items() if name != "middle"}
 
     def quantity(self, name: str) -> str:
         """Tell what a trip point is in the measurand.
@@ -83,21 +85,14 @@ class Summary(Viewed):
         Parameters
         ----------
         name : str
-            "upper", "lower" or "width".
+            "upper", "lower" or "width"; the middle is given in volts only.
 
         Returns
         -------
         str
             Such as "level 1.405 m", or "0.6038 m" for the width; empty without a signal.
         """
-        signal = self.design.signal
-        if signal is None or name not in self.quantities:
-            return ""
-        if math.isnan(self.quantities[name]):
-            return f"{signal.name} not known there"
-        # Without a prefix: quantities in one table stay in one unit.
-        shown = f"{self.quantities[name]:.4g} {signal.unit}".strip()
-        return shown if name == "width" else f"{signal.name} {shown}"
+        return self.texts.quantity(name) if name != "middle" else ""
 
     def interval(self, name: str) -> str:
         """Tell within which limits the tolerances leave a trip point.
@@ -110,13 +105,14 @@ class Summary(Viewed):
         Returns
         -------
         str
-            Empty without tolerances.
+            Empty without tolerances; why they are not evaluated, where they are too many.
         """
-        ends = self.intervals.get(name, ())
+        ends = self.intervals.get(name)
+        if ends is None:
+            return self.levels.not_evaluated if name in ("upper", "lower") else ""
         if any(map(math.isnan, ends)):
             return "does not switch everywhere within tolerances"
-        shown = " to ".join(show(end, "V") for end in ends)
-        return f"{shown} over tolerances" if shown else ""
+        return f"{show_span(*ends, 'V')} over tolerances"
 
     def record(self) -> dict[str, Any]:
         """Give everything as plain values, unrounded, in SI units.
@@ -169,6 +165,7 @@ class Summary(Viewed):
                 "V",
                 "; ".join(filter(None, (self.quantity(name), self.interval(name)))),
                 latex_name(f"V_{name}"),
+                self.texts.digits(name),
             )
             for name, volts in self.trips.items()
         ]

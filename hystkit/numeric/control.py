@@ -186,7 +186,7 @@ def control_net(fraction: Fraction, design: Design, box: dict[str, Interval]) ->
     )
 
 
-@dataclass(frozen=True)
+@dataclass(frozen=True, eq=False)
 class _Place:
     """Where the polynomials of a fraction are evaluated: intervals, and fixed values elsewhere."""
 

@@ -21,6 +21,7 @@ from hystkit.numeric.views import Interval
 
 #: More uncertain resistances than this would need too many corners.
 MAX_RESISTANCES = 16
+TOO_MANY = f"tolerances not evaluated: more than {MAX_RESISTANCES} uncertain resistances"
 KINDS = ("upper", "lower", "width", "middle")
 
 
@@ -160,18 +161,35 @@ def trip_intervals(design: Design) -> tuple[Interval, Interval] | None:
     Returns
     -------
     tuple of two (lowest, highest), or None
-        Upper, then lower [V]; None without tolerances or with too many. NaN where a corner cannot
-        switch.
+        Upper, then lower [V]; None without tolerances, and where `not_evaluated` tells why. NaN
+        where a corner cannot switch.
 
     Notes
     -----
     See `corners` for the proof.
     """
     box = toleranced(design)
-    if not box or sum(is_resistance(design, name) for name in box) > MAX_RESISTANCES:
+    if not box or not_evaluated(design):
         return None
     found = corners(design, box)
     return found.interval("upper"), found.interval("lower")
+
+
+def not_evaluated(design: Design) -> str:
+    """Tell why `trip_intervals` gives none although tolerances are stated.
+
+    Parameters
+    ----------
+    design : Design
+        As for `trip_intervals`.
+
+    Returns
+    -------
+    str
+        Empty where all stated tolerances are evaluated.
+    """
+    count = sum(is_resistance(design, name) for name in toleranced(design))
+    return TOO_MANY if count > MAX_RESISTANCES else ""
 
 
 def _grid(

@@ -7,7 +7,7 @@ import math
 from hystkit.circuit.design import Design
 from hystkit.circuit.netlist import netlist
 from hystkit.numeric.compile import kernel
-from hystkit.numeric.extremes import trip_intervals
+from hystkit.numeric.extremes import not_evaluated, trip_intervals
 from hystkit.numeric.operating import fixed_voltage
 from hystkit.numeric.status import Status
 from hystkit.numeric.trips import TripPoints, trip_points
@@ -58,6 +58,7 @@ def levels(design: Design) -> Levels:
         signal=design.signal,
         ok=status is Status.OK,
         message=status.message,
+        not_evaluated=not_evaluated(design),
     )
 
 

@@ -18,7 +18,7 @@ from hystkit.symbolic.ledger import expand
 from hystkit.symbolic.symbols import symbol
 
 
-@dataclass(frozen=True)
+@dataclass(frozen=True, eq=False)
 class OperatingPoint:
     """Voltages and currents in one output state.
 

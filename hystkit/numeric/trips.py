@@ -19,6 +19,7 @@ from hystkit.circuit.reading import collect, is_kind, wrong_kind
 from hystkit.circuit.signals import Signal
 from hystkit.circuit.stage import Stage
 from hystkit.numeric.compile import kernel
+from hystkit.numeric.measurand import Measurand, span_of
 from hystkit.numeric.status import Status, status_of
 from hystkit.numeric.tolerances import acts
 
@@ -36,44 +37,6 @@ _SYMBOLS = {
 
 
 @dataclass(frozen=True)
-class Measurand(Viewed):
-    """Trip points in the signal's own unit, in order of the quantity.
-
-    Attributes
-    ----------
-    low, high, width : float or ndarray
-        In `unit`; low < high also where the sensor's voltage falls.
-    low_is : {"lower", "upper"}
-        Which trip point stands at `low`.
-    unit, name : str
-        Unit and name of the quantity.
-    """
-
-    low: Any
-    high: Any
-    width: Any
-    low_is: str
-    unit: str
-    name: str
-
-    def _fields(self) -> Sequence[Field]:
-        other = "upper" if self.low_is == "lower" else "lower"
-        low, high, width = (self._plain(v) for v in (self.low, self.high, self.width))
-        return (
-            Field(f"{self.name}, low", low, "", f"{self.low_is} trip point"),
-            Field(f"{self.name}, high", high, "", f"{other} trip point"),
-            Field(f"{self.name}, width", width),
-        )
-
-    def _plain(self, values: Any) -> str:
-        """Write values in the unit itself: a level in m does not turn into mm."""
-        span = _span(values)
-        low, high = span if isinstance(span, tuple) else (span, span)
-        ends = dict.fromkeys(f"{end:.4g}" for end in (low, high))
-        return f"{' to '.join(ends)} {self.unit}".rstrip()
-
-
-@dataclass(frozen=True)
 class TripPoints(Viewed):
     """Both trip points, at the signal source.
 
@@ -83,6 +46,8 @@ class TripPoints(Viewed):
         [V], all of one shape; NaN for impossible elements.
     status : int or ndarray of int8
         A `Status` code for each element, 0 where the stage switches.
+    sense : {"inverting", "non-inverting"}
+        Of the stage.
     signal : Signal or None
         Quantity <-> volts.
     v_cc : float or ndarray
@@ -94,6 +59,7 @@ class TripPoints(Viewed):
     width: Any
     middle: Any
     status: Any
+    sense: str
     signal: Signal | None = None
     v_cc: Any = None
 
@@ -104,19 +70,29 @@ class TripPoints(Viewed):
 
     @property
     def measurand(self) -> Measurand | None:
-        """The same in the signal's own unit, ordered; None without a signal."""
+        """The same in the signal's own unit, ordered, with the edges of a load.
+
+        None without a signal.
+        """
         if self.signal is None:
             return None
         supply = {"V_CC": self.v_cc} if self.signal.ratiometric and self.v_cc is not None else {}
         lower, upper = (self.signal.quantity(trip, **supply) for trip in (self.lower, self.upper))
         falling = self.signal.decreasing
         low, high = (upper, lower) if falling else (lower, upper)
-        low_is = "upper" if falling else "lower"
-        return Measurand(low, high, high - low, low_is, self.signal.unit, self.signal.name)
+        return Measurand(
+            low,
+            high,
+            high - low,
+            "upper" if falling else "lower",
+            self.signal.unit,
+            self.signal.name,
+            self.sense,
+        )
 
     def _fields(self) -> Sequence[Field]:
         rows = [
-            Field(name, _span(getattr(self, name)), "V", latex=rf"V_{{\mathrm{{{name}}}}}")
+            Field(name, span_of(getattr(self, name)), "V", latex=rf"V_{{\mathrm{{{name}}}}}")
             for name in ("upper", "lower", "width", "middle")
         ]
         failed = int(np.count_nonzero(self.status))
@@ -182,7 +158,16 @@ def trip_points(design: Design, **overrides: ArrayLike | str) -> TripPoints:
         keep = status == Status.OK
         upper, lower = (np.where(keep, trip, np.nan)[()] for trip in (upper, lower))
         width, middle = upper - lower, (upper + lower) / 2
-    return TripPoints(upper, lower, width, middle, status[()], design.signal, values["V_CC"])
+    return TripPoints(
+        upper,
+        lower,
+        width,
+        middle,
+        status[()],
+        design.stage.sense,
+        design.signal,
+        values["V_CC"],
+    )
 
 
 def overridden(design: Design, overrides: dict[str, Any]) -> dict[str, Any]:
@@ -300,14 +285,3 @@ def _number(name: str, value: Any, faults: list[Fault]) -> float | NDArray[np.fl
             )
         )
         return np.float64(np.nan)
-
-
-def _span(values: Any) -> float | tuple[float, float]:
-    """Give a scalar as it is, of an array the lowest and the highest possible element."""
-    if np.ndim(values) == 0:
-        return float(values)
-    possible = np.asarray(values)[np.isfinite(values)]
-    if possible.size == 0:
-        return float("nan")
-    low, high = float(possible.min()), float(possible.max())
-    return low if low == high else (low, high)

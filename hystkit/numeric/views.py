@@ -27,7 +27,8 @@ class Levels:
     upper, lower, width, middle : float
         Trip points at the signal source, their difference and their mean.
     upper_interval, lower_interval : tuple of float or None
-        Exact lowest and highest trip over the stated tolerances; None without tolerances.
+        Exact lowest and highest trip over the stated tolerances; None without tolerances, and
+        where `not_evaluated` tells why.
     output_high, output_low : float
         Output node voltage in each state, at the trip that leaves that state.
     reference : float or None
@@ -48,6 +49,8 @@ class Levels:
         Whether the stage switches with these values.
     message : str
         What is wrong when it does not.
+    not_evaluated : str
+        Why there are no intervals although tolerances are stated; empty otherwise.
     """
 
     v_ee: float
@@ -68,9 +71,10 @@ class Levels:
     signal: Signal | None = None
     ok: bool = True
     message: str = ""
+    not_evaluated: str = ""
 
 
-@dataclass(frozen=True)
+@dataclass(frozen=True, eq=False)
 class Loop:
     """The switching loop: output against signal, both paths.
 
@@ -91,7 +95,7 @@ class Loop:
     levels: Levels
 
 
-@dataclass(frozen=True)
+@dataclass(frozen=True, eq=False)
 class Response:
     """Signal and output against time.
 

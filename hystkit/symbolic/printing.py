@@ -9,7 +9,7 @@ from typing import Any
 import sympy as sp
 from sympy.printing.latex import LatexPrinter
 
-from hystkit.symbolic.symbols import latex_name
+from hystkit.symbolic.symbols import latex_name, split_name
 
 #: Width, in letters, that the right side of an equation may take on a page.
 LINE_WIDTH = 52.0
@@ -157,7 +157,7 @@ def width(expression: sp.Expr, letters: Letters = ()) -> float:
         In letters of the text.
     """
     if expression.is_Symbol:
-        named = 1.6 + 1.2 * len(expression.name.partition("_")[2])
+        named = 1.6 + 1.2 * len(split_name(expression.name)[1])
         return float(dict(letters).get(expression, named))
     if expression.is_Add:
         return _sum_width(expression.args, letters) - 2.8

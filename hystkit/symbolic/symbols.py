@@ -114,6 +114,11 @@ def split_name(name: str) -> tuple[str, str]:
     -------
     tuple of str
         Such as ("R", "PU") or ("R", "F2"): two letters side by side would read as a product.
+
+    Examples
+    --------
+    >>> split_name("R_PU"), split_name("RF2"), split_name("R")
+    (('R', 'PU'), ('R', 'F2'), ('R', ''))
     """
     base, _, subscript = name.partition("_")
     return base[:1], base[1:] + subscript

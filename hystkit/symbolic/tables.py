@@ -9,6 +9,7 @@ import sympy as sp
 
 from hystkit.base.fields import Field, Viewed
 from hystkit.circuit.design import Design
+from hystkit.circuit.trip_texts import TripTexts
 from hystkit.symbolic.law import SwitchingLaw
 from hystkit.symbolic.symbols import NON_IDEAL, latex_name, meaning, symbol
 
@@ -58,13 +59,14 @@ def trip_fields(law: SwitchingLaw, design: Design) -> list[Field]:
     for left, right in law.named_rows:
         values[left] = right.xreplace(values)
     upper, lower = (float(values[symbol(name)]) for name in ("V_upper", "V_lower"))
-    signal = design.signal
+    trips = TripTexts(upper, lower, design.signal)
     fields = []
-    for name, volts in (("V_upper", upper), ("V_lower", lower), ("V_width", upper - lower)):
-        note = meaning(name)[0]
-        if signal is not None and name != "V_width":
-            note += f"; {signal.name} {float(signal.quantity(volts)):.4g} {signal.unit}".rstrip()
-        fields.append(Field(name, volts, "V", note, latex_name(name)))
+    for trip in ("upper", "lower", "width"):
+        name = f"V_{trip}"
+        quantity = trips.quantity(trip) if trip != "width" else ""
+        note = "; ".join(filter(None, (meaning(name)[0], quantity)))
+        digits = trips.digits(trip)
+        fields.append(Field(name, trips.volts[trip], "V", note, latex_name(name), digits))
     return fields
 
 

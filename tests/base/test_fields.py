@@ -97,6 +97,19 @@ def test_text_is_aligned_and_rounded() -> None:
     ]
 
 
+def test_a_number_gets_the_digits_that_it_asks_for() -> None:
+    field = Field("upper", 2.50053, "V", digits=5)
+    assert (field.shown, field.shown_latex) == ("2.5005 V", r"$2.5005\,\mathrm{V}$")
+
+
+def test_ends_of_a_narrow_interval_are_told_apart() -> None:
+    field = Field("upper", (2.4975, 2.5025), "V")
+    assert field.shown == "2.4975 V to 2.5025 V"
+    assert field.shown_latex == r"$2.4975\,\mathrm{V}$ to $2.5025\,\mathrm{V}$"
+    for open_end in ((1.0, math.inf), (math.nan, math.nan), (1.0, 1.0)):
+        assert " to " in Field("upper", open_end, "V").shown
+
+
 def test_html_holds_the_same_cells() -> None:
     assert cells(TRIPS) == [[f.label, f.shown, f.note] for f in TRIPS.fields]
     assert html.escape(TRIPS.title) in TRIPS._repr_html_()

@@ -7,7 +7,7 @@ from pathlib import Path
 import pytest
 
 import hystkit as hk
-from hystkit.base.files import check_free, write_text
+from hystkit.base.files import check_free, write_bytes, write_text
 
 
 def test_a_file_is_written_and_only_that(tmp_path: Path) -> None:
@@ -17,6 +17,15 @@ def test_a_file_is_written_and_only_that(tmp_path: Path) -> None:
     with pytest.raises(hk.OutputExistsError, match=r"a\.txt exists already"):
         write_text(path, "other")
     assert write_text(path, "new", overwrite=True).read_text(encoding="utf-8") == "new"
+
+
+def test_bytes_are_written_as_they_are(tmp_path: Path) -> None:
+    data = bytes(range(256)) + b"\r\n"
+    path = write_bytes(tmp_path / "a.bin", data)
+    assert path.read_bytes() == data
+    with pytest.raises(hk.OutputExistsError, match=r"a\.bin exists already"):
+        write_bytes(path, b"")
+    assert path.read_bytes() == data
 
 
 def test_a_file_that_only_looks_like_a_leftover_stays(tmp_path: Path) -> None:
@@ -74,6 +83,8 @@ def test_a_target_is_checked_ahead(tmp_path: Path) -> None:
     check_free(tmp_path / "new" / "deeper", "another")
     with pytest.raises(hk.OutputExistsError, match="exists already"):
         check_free(tmp_path / "file", "another")
+    check_free(tmp_path / "file", "another", overwrite=True)
+    # What can never exist is refused even where everything may be replaced.
     with pytest.raises(hk.InputError, match="cannot be written") as caught:
-        check_free(tmp_path / "file" / "new" / "deeper", "another")
+        check_free(tmp_path / "file" / "new" / "deeper", "another", overwrite=True)
     assert caught.value.faults[0].have == f"{tmp_path / 'file'} is a file"

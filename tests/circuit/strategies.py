@@ -8,6 +8,7 @@ from typing import Any
 from hypothesis import strategies as st
 
 import hystkit as hk
+from tests.circuit.custom import BRIDGE, TAPPED
 
 #: The twenty forms with every subset of their optional parts.
 VARIANTS = tuple(
@@ -15,37 +16,6 @@ VARIANTS = tuple(
     for stage in hk.Stage.all()
     for count in range(len(stage.optional) + 1)
     for fitted in combinations(stage.optional, count)
-)
-
-#: Six resistors and an inner node: the divider's tap drives plus through a resistor of its own.
-TAPPED = hk.Stage.custom(
-    [
-        hk.Resistor("R_1", "cc", "tap"),
-        hk.Resistor("R_2", "tap", "ee"),
-        hk.Resistor("R_3", "tap", "plus"),
-        hk.Resistor("R_F", "out", "plus"),
-        hk.Resistor("R_4", "signal", "minus"),
-        hk.Resistor("R_5", "minus", "ee"),
-    ],
-    name="tapped divider",
-)
-
-#: The signal reaches both inputs, and an inner node joins more than two resistors.
-BRIDGE = hk.Stage.custom(
-    [
-        hk.Resistor("R_1", "signal", "plus"),
-        hk.Resistor("R_2", "signal", "star"),
-        hk.Resistor("R_3", "star", "minus"),
-        hk.Resistor("R_4", "star", "ref"),
-        hk.Resistor("R_5", "plus", "minus"),
-        hk.Resistor("R_6", "minus", "ground"),
-        hk.Resistor("R_F", "out", "plus"),
-        hk.Resistor("R_PU", "pu", "out"),
-        hk.Resistor("R_L", "out", "load"),
-    ],
-    supply="split",
-    output="open-collector",
-    sense="non-inverting",
 )
 
 stages = st.sampled_from((*VARIANTS, TAPPED, BRIDGE))
@@ -80,6 +50,7 @@ def devices() -> st.SearchStrategy[hk.Device]:
         common_mode_high=st.none() | within(-0.5, 2),
         limits=st.just({}) | st.just({"offset": (-0.02, 0.02), "bias_plus": (-1e-6, 1e-6)}),
         name=st.text(max_size=20),
+        typical=st.just(()) | st.just(("gain", "offset")),
     )
 
 

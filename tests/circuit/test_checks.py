@@ -10,7 +10,8 @@ import pytest
 import hystkit as hk
 from hystkit.circuit.checks import SUFFIXES, circuit_faults, infer_sense
 from hystkit.circuit.elements import Element
-from tests.circuit.strategies import BRIDGE, TAPPED, VARIANTS
+from tests.circuit.custom import BRIDGE, TAPPED
+from tests.circuit.strategies import VARIANTS
 
 R, W = hk.Resistor, hk.Wire
 

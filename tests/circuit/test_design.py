@@ -12,7 +12,8 @@ import pytest
 from hypothesis import given
 
 import hystkit as hk
-from tests.circuit.strategies import TAPPED, VARIANTS, designs
+from tests.circuit.custom import TAPPED
+from tests.circuit.strategies import VARIANTS, designs
 
 PARTS = {"R_T": "46k4", "R_B": hk.Part("26.7k", tol=0.01, tempco=1e-4), "R_F": 100e3}
 #: A sound value for every part there is.

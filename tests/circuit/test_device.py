@@ -16,8 +16,8 @@ NUMBERS = tuple(f.name for f in fields(hk.Device) if f.name in UNITS)
 SIGNED = ("offset", "bias_plus", "bias_minus", "leakage", "common_mode_low", "common_mode_high")
 
 
-def test_every_field_but_name_and_limits_has_a_unit() -> None:
-    assert {f.name for f in fields(hk.Device)} - {"name", "limits"} == UNITS.keys()
+def test_every_number_has_a_unit() -> None:
+    assert {f.name for f in fields(hk.Device)} - {"name", "limits", "typical"} == UNITS.keys()
 
 
 @pytest.mark.parametrize("name", NUMBERS)
@@ -91,7 +91,7 @@ def test_a_device_is_a_value() -> None:
     assert device != hk.Device(offset="2 mV", name="comparator class")
 
 
-@pytest.mark.parametrize("field", ["name", "limits"])
+@pytest.mark.parametrize("field", ["name", "limits", "typical"])
 def test_a_field_of_another_kind(field: str) -> None:
     with pytest.raises(hk.DesignError) as caught:
         hk.Device(**{field: 3}, delay=-1)  # type: ignore[arg-type]

@@ -14,7 +14,8 @@ from hypothesis import strategies as st
 
 import hystkit as hk
 from hystkit.circuit.record import from_record, to_record
-from tests.circuit.strategies import BRIDGE, TAPPED, designs
+from tests.circuit.custom import BRIDGE, TAPPED
+from tests.circuit.strategies import designs
 
 JsonObject = dict[str, Any]
 

@@ -12,7 +12,8 @@ import pytest
 
 import hystkit as hk
 from hystkit.circuit.checks import circuit_faults, infer_sense
-from tests.circuit.strategies import BRIDGE, TAPPED, VARIANTS
+from tests.circuit.custom import BRIDGE, TAPPED
+from tests.circuit.strategies import VARIANTS
 
 
 def by_title(stage: hk.Stage) -> str:

@@ -18,6 +18,7 @@ from hystkit.circuit.demo import header_tank
 from hystkit.export import folder as folder_module
 from hystkit.export.folder import FILES, free_folder
 from hystkit.export.summary import Summary
+from tests.circuit.custom import uncertain_chain
 from tests.export.designs import full, ladder, stuck
 
 
@@ -128,6 +129,12 @@ def test_tolerances_that_reach_too_far_are_told() -> None:
     limits = json.loads(json.dumps(summary.record(), allow_nan=False))["trips"]["upper"]
     assert limits["lowest"] is None
     assert limits["value"] == summary.levels.upper
+
+
+def test_tolerances_that_are_too_many_are_not_passed_over() -> None:
+    told = Summary(uncertain_chain(17)).to_text()
+    assert told.count("tolerances not evaluated: more than 16 uncertain resistances") == 2
+    assert "not evaluated" not in Summary(uncertain_chain(16)).to_text()
 
 
 def test_record_without_signal_and_tolerance_says_so() -> None:

@@ -19,6 +19,8 @@ from hystkit.export.page import WrittenPage, page_frame
 from hystkit.export.page.document import Page
 from hystkit.export.page.model import signal_data, state_data
 from hystkit.export.page.writer import standalone
+from hystkit.numeric.extremes import not_evaluated
+from tests.circuit.custom import uncertain_chain
 from tests.export.designs import AWKWARD, every_design, full, ladder, stuck
 from tests.project.source import ROOT, run_python
 
@@ -250,6 +252,19 @@ def test_nothing_is_replaced_unasked(tmp_path: Path, taken: str) -> None:
     assert [file.name for file in tmp_path.iterdir()] == [taken]
     hk.write_page(header_tank(), tmp_path / "tank.html", separate_script=True, overwrite=True)
     assert (tmp_path / taken).read_text(encoding="utf-8") != "mine"
+
+
+@pytest.mark.parametrize("live", [True, False])
+def test_tolerances_that_are_too_many_are_not_passed_over(live: bool) -> None:
+    told = f">{not_evaluated(uncertain_chain(17))}<"
+    assert hk.page_fragment(uncertain_chain(17), live=live).count(told) == 2
+    assert told not in hk.page_fragment(uncertain_chain(16), live=live)
+
+
+def test_a_file_above_the_page_is_told(tmp_path: Path) -> None:
+    (tmp_path / "taken").write_text("mine", encoding="utf-8")
+    with pytest.raises(hk.InputError, match="cannot be written"):
+        hk.write_page(header_tank(), tmp_path / "taken" / "tank.html", overwrite=True)
 
 
 def test_another_ending_is_refused(tmp_path: Path) -> None:

@@ -13,7 +13,8 @@ import hystkit as hk
 from hystkit.circuit.netlist import netlist
 from hystkit.numeric.compile import compiled, kernel
 from hystkit.symbolic.symbols import symbol
-from tests.circuit.strategies import BRIDGE, TAPPED, VARIANTS
+from tests.circuit.custom import BRIDGE, TAPPED
+from tests.circuit.strategies import VARIANTS
 from tests.numeric.circuits import random_stages, random_values
 
 

@@ -8,8 +8,9 @@ import numpy as np
 import pytest
 
 import hystkit as hk
-from hystkit.numeric.extremes import MAX_RESISTANCES, corners, trip_intervals
+from hystkit.numeric.extremes import MAX_RESISTANCES, corners, not_evaluated, trip_intervals
 from hystkit.numeric.tolerances import toleranced
+from tests.circuit.custom import uncertain_chain
 from tests.circuit.strategies import VARIANTS
 
 VALUES = {"R_T": "33k", "R_B": "47k", "R_R": "10k", "R_I": "22k", "R_G": "150k", "R_F": "180k"}
@@ -100,12 +101,12 @@ def test_a_corner_that_cannot_switch_leaves_no_interval() -> None:
 
 
 def test_too_many_uncertain_resistances() -> None:
-    chain = [hk.Resistor(f"R_{n}", f"n{n}", f"n{n + 1}") for n in range(1, MAX_RESISTANCES + 1)]
-    wires = [("n1", "out"), (f"n{MAX_RESISTANCES + 1}", "plus"), ("signal", "minus")]
-    divider = hk.Resistor("R_T", "plus", "cc")
-    stage = hk.Stage.custom([*chain, divider, *(hk.Wire(*nodes) for nodes in wires)])
-    design = hk.Design(stage, dict.fromkeys(stage.parts, hk.Part("10k", tol=0.01)), supply=5)
+    design = uncertain_chain(MAX_RESISTANCES + 1)
     assert trip_intervals(design) is None
+    assert hk.levels(design).not_evaluated == not_evaluated(design)
+    assert "more than 16 uncertain resistances" in not_evaluated(design)
     with pytest.raises(hk.DesignError, match="too many uncertain resistances"):
         corners(design, toleranced(design))
-    assert trip_intervals(design.with_parts(R_T=hk.Part("10k"))) is not None
+    fewer = design.with_parts(R_T=hk.Part("10k"))
+    assert trip_intervals(fewer) is not None
+    assert not_evaluated(fewer) == hk.levels(fewer).not_evaluated == ""

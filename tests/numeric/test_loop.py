@@ -9,6 +9,7 @@ import pytest
 from hypothesis import given
 
 import hystkit as hk
+from hystkit.numeric.operating import operating_point
 from tests.circuit.strategies import designs
 from tests.numeric import nodal
 from tests.numeric.test_levels import vent
@@ -62,3 +63,17 @@ def test_a_design_that_cannot_switch_has_no_path() -> None:
     loop = hk.loop(vent(levels={"V_L": -100}))
     assert loop.axis == (0.0, 5.0)
     assert np.isnan(loop.rising[0][1])
+
+
+def test_results_that_hold_arrays_can_be_compared() -> None:
+    design = vent()
+    stage, time = design.stage, np.linspace(0.0, 1.0, 5)
+    makers = (
+        lambda: hk.loop(design),
+        lambda: hk.response(design, time, 5 * time),
+        lambda: operating_point(stage, "high", design.values, time),
+    )
+    for make in makers:
+        one, other = make(), make()
+        # numpy does not say whether two arrays are equal: such a result equals itself only.
+        assert (one == one, one == other) == (True, False)

@@ -10,7 +10,7 @@ import pytest
 import hystkit as hk
 from hystkit.circuit.netlist import netlist
 from hystkit.numeric.operating import feedback_factor, input_resistance, operating_point
-from tests.circuit.strategies import BRIDGE, TAPPED
+from tests.circuit.custom import BRIDGE, TAPPED
 from tests.numeric import nodal
 from tests.numeric.circuits import random_values
 

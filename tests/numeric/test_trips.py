@@ -14,7 +14,8 @@ import hystkit as hk
 from hystkit.circuit.elements import Element
 from hystkit.numeric.compile import kernel
 from hystkit.numeric.status import Status
-from tests.circuit.strategies import BRIDGE, TAPPED, VARIANTS
+from tests.circuit.custom import BRIDGE, TAPPED
+from tests.circuit.strategies import VARIANTS
 from tests.numeric import nodal
 from tests.numeric.circuits import a_design, random_stages, random_values, symbol_names
 

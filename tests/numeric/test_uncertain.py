@@ -145,7 +145,7 @@ def test_measurand_of_a_straight_sensor_is_exact(slope: float) -> None:
     assert heat.extremes["width"] == pytest.approx(
         tuple(2 * w for w in found.extremes["width"]), rel=1e-12
     )
-    assert heat.gap == 0
+    assert set(heat.gap.values()) == {0}
     assert heat.rss["width"] == pytest.approx(2 * found.rss["width"], rel=1e-9)
     assert heat.rss["low"] == pytest.approx(2 * found.rss[heat.low_is], rel=1e-9)
     assert np.all(heat.samples["low"] < heat.samples["high"])
@@ -165,7 +165,7 @@ def test_measurand_of_a_bent_sensor_is_bracketed() -> None:
         assert low <= drawn.min()
         assert drawn.max() <= high
     low, high = heat.extremes["width"]
-    assert 0 < heat.gap < 0.25 * (high - low)
+    assert 0 < heat.gap["width"] < 0.25 * (high - low)
     assert heat.rss["width"] / 3 == pytest.approx(
         hk.spread(design, samples=1 << 16).measurand.samples["width"].std(), rel=0.05
     )

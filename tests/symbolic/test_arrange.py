@@ -11,7 +11,8 @@ import hystkit as hk
 from hystkit.symbolic.arrange import LARGEST, by_source
 from hystkit.symbolic.ledger import expand
 from hystkit.symbolic.symbols import NON_IDEAL, symbol
-from tests.circuit.strategies import TAPPED, VARIANTS
+from tests.circuit.custom import TAPPED
+from tests.circuit.strategies import VARIANTS
 from tests.numeric.circuits import random_stages
 
 R_1, R_2, R_3 = map(symbol, ("R_1", "R_2", "R_3"))

@@ -15,7 +15,8 @@ import sympy as sp
 import hystkit as hk
 from hystkit.symbolic.ledger import HIGH, LOW, expand
 from hystkit.symbolic.symbols import NON_IDEAL, symbol
-from tests.circuit.strategies import BRIDGE, TAPPED, VARIANTS
+from tests.circuit.custom import BRIDGE, TAPPED
+from tests.circuit.strategies import VARIANTS
 from tests.circuit.test_stage import by_title
 
 ROOT = Path(__file__).parents[2]
@@ -275,7 +276,7 @@ def test_a_law_can_be_pickled() -> None:
 
 SCRIPT = """
 import hystkit as hk
-from tests.circuit.strategies import BRIDGE, TAPPED
+from tests.circuit.custom import BRIDGE, TAPPED
 from tests.numeric.circuits import random_stages
 optional = [stage.with_options(*stage.optional) for stage in hk.Stage.all()]
 for stage in (*hk.Stage.all(), *optional, TAPPED, BRIDGE, *random_stages(5, seed=3)):

@@ -9,7 +9,8 @@ from hypothesis import strategies as st
 import hystkit as hk
 from hystkit.symbolic.ledger import HIGH, LOW, Ledger, expand, needed, restrict
 from hystkit.symbolic.symbols import NON_IDEAL, symbol
-from tests.circuit.strategies import BRIDGE, VARIANTS
+from tests.circuit.custom import BRIDGE
+from tests.circuit.strategies import VARIANTS
 
 R_1, R_2, R_3 = map(symbol, ("R_1", "R_2", "R_3"))
 

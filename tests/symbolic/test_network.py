@@ -16,9 +16,9 @@ from hystkit.numeric.compile import kernel
 from hystkit.symbolic.ledger import HIGH, LOW
 from hystkit.symbolic.printing import fits
 from hystkit.symbolic.symbols import NON_IDEAL
-from tests.circuit.strategies import BRIDGE, TAPPED, VARIANTS
+from tests.circuit.custom import BRIDGE, COUPLED, TAPPED
+from tests.circuit.strategies import VARIANTS
 from tests.numeric.circuits import random_stages, symbol_names
-from tests.symbolic.coupled import COUPLED
 
 Values = Mapping[str, Fraction]
 CUSTOM = (TAPPED, BRIDGE, *COUPLED, *random_stages(20, seed=11))

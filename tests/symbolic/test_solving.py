@@ -10,7 +10,7 @@ import sympy as sp
 import hystkit as hk
 from hystkit.symbolic.solving import normalised, solve_pair
 from hystkit.symbolic.symbols import symbol
-from tests.circuit.strategies import TAPPED
+from tests.circuit.custom import TAPPED
 from tests.circuit.test_stage import by_title
 
 #: Pairs of parts of which only the ratio counts, so that they cannot set two trips.

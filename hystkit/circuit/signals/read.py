@@ -10,7 +10,7 @@ from typing import Any
 import numpy as np
 
 from hystkit.base.errors import Fault
-from hystkit.base.quantity import parse_percent, read
+from hystkit.base.quantity import parse_percent, read, show
 from hystkit.circuit.parts import Part
 from hystkit.circuit.reading import Quantity, collect, members
 
@@ -127,7 +127,7 @@ def read_resistor(faults: list[Fault], name: str, given: Part | Quantity) -> Par
     Part
         Of any value where it could not be read.
     """
-    value = given.value if isinstance(given, Part) else given
+    value = _value_in("Ω", faults, name, given)
     number = read_positive(faults, name, value, "Ω")
     return given if isinstance(given, Part) else Part(0.0 if math.isnan(number) else number)
 
@@ -149,7 +149,7 @@ def read_excitation(faults: list[Fault], given: Part | Quantity | None) -> Part 
     """
     if given is None:
         return None
-    value = given.value if isinstance(given, Part) else given
+    value = _value_in("V", faults, "excitation", given)
     volts = collect(faults, lambda: read(value, unit="V", name="excitation"))
     if volts == 0:
         faults.append(
@@ -161,6 +161,22 @@ def read_excitation(faults: list[Fault], given: Part | Quantity | None) -> Part 
             )
         )
     return given if isinstance(given, Part) else Part(0.0 if math.isnan(volts) else volts)
+
+
+def _value_in(unit: str, faults: list[Fault], name: str, given: Part | Quantity) -> Quantity:
+    """Give the value of a part, or what stands for one, and refuse a part in another unit."""
+    if not isinstance(given, Part):
+        return given
+    if given.unit not in ("", unit):
+        faults.append(
+            Fault(
+                f"{name} is not in {unit}.",
+                asked=f"a part in {unit}",
+                have=show(given.value, given.unit),
+                remedy=_EXAMPLES[unit],
+            )
+        )
+    return given.value
 
 
 def read_numbers(

@@ -9,7 +9,7 @@ from pathlib import Path
 
 from hystkit.base.errors import InputError
 from hystkit.base.fields import Field, Viewed
-from hystkit.base.files import already_there, write_text
+from hystkit.base.files import check_free, write_text
 from hystkit.export.notebook.cells import write_cells
 from hystkit.export.notebook.document import document, without_fetching
 from hystkit.export.notebook.execute import PublishError, execute, read
@@ -76,7 +76,8 @@ def publish(
     Raises
     ------
     InputError
-        If the file is missing or is no notebook, or the packages for it are not installed.
+        If the file is missing or is no notebook, the packages for it are not installed, or a
+        folder above `out` is a file.
     PublishError
         If a cell fails or takes too long; the cell and its error are named. If a widget would
         leave nothing to see.
@@ -101,8 +102,7 @@ def publish(
     page = folder / f"{source.stem}.html"
     copy = folder / f"{source.stem}.published.ipynb"
     for file in (page, copy):
-        if file.exists() and not overwrite:
-            raise already_there(file, "another folder, or overwrite=True (--overwrite)")
+        check_free(file, "another folder, or overwrite=True (--overwrite)", overwrite=overwrite)
     executed = read(source)
     execute(executed, source, timeout)
     missing = missing_outputs(executed)

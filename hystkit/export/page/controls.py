@@ -7,8 +7,7 @@ from collections.abc import Iterable, Iterator
 
 from hystkit.circuit.design import Design
 from hystkit.export.page.model import COMMON_MODE, SLIDER_SERIES, device_fields
-from hystkit.export.page.pen import split_symbol
-from hystkit.symbolic.symbols import meaning
+from hystkit.symbolic.symbols import meaning, split_name
 
 DEVICE_LABELS = {
     "drop_high": "output high, below V_CC",
@@ -62,7 +61,7 @@ def symbol_html(name: str) -> str:
     str
         HTML.
     """
-    base, index = (html.escape(part) for part in split_symbol(name))
+    base, index = (html.escape(part) for part in split_name(name))
     return f'<i class="hk-letter">{base}</i>' + (f"<sub>{index}</sub>" if index else "")
 
 
@@ -100,7 +99,8 @@ def _device(design: Design, heading: str) -> str:
         _row(name, DEVICE_LABELS[name], text=DEVICE_LABELS[name], hint=_hint(name))
         for name in device_fields(design.stage)
     )
-    named = f" <span>{html.escape(design.device.name)}</span>" if design.device.name else ""
+    title = design.device.title
+    named = f" <span>{html.escape(title)}</span>" if title else ""
     summary = f"<summary><{heading}>Device</{heading}>{named}</summary>"
     return f'<details class="hk-group hk-device">{summary}{rows}</details>'
 

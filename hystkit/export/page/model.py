@@ -17,7 +17,7 @@ from hystkit.circuit.device import LAW_FIELDS
 from hystkit.circuit.preferred import SERIES
 from hystkit.circuit.stage import Stage
 from hystkit.export.page.pen import ADVANCES, SIGNS
-from hystkit.numeric.extremes import MAX_RESISTANCES
+from hystkit.numeric.extremes import MAX_RESISTANCES, TOO_MANY
 from hystkit.numeric.status import Status
 
 #: Series that the sliders can step through.
@@ -224,6 +224,7 @@ def tables() -> dict[str, Any]:
         "units": units,
         "tolerances": dict(TOLERANCE_LETTERS),
         "series": {name: list(SERIES[name]) for name in SLIDER_SERIES},
+        "tooMany": TOO_MANY,
         "status": {status.name: status.message for status in Status},
         "advances": list(ADVANCES),
         "signs": SIGNS,

@@ -7,6 +7,8 @@ import math
 from collections.abc import Sequence
 from dataclasses import dataclass, field
 
+from hystkit.symbolic.symbols import split_name
+
 #: Letter sizes [px].
 TEXT, SMALL = 12.5, 11.5
 #: How much wider a bold text is set, at most.
@@ -73,26 +75,9 @@ def symbol_width(name: str, tail: str = "", size: float = SMALL) -> float:
     float
         [px].
     """
-    base, index = split_symbol(name)
+    base, index = split_name(name)
     after = SPACE + text_width(tail, size) if tail else 0.0
     return text_width(base, size) + text_width(index, size * INDEX) + after
-
-
-def split_symbol(name: str) -> tuple[str, str]:
-    """Give the letter of a name and its index.
-
-    Parameters
-    ----------
-    name : str
-        Such as "V_OH" or "R1".
-
-    Returns
-    -------
-    tuple of str
-        Such as ("V", "OH"); the index is empty where there is none.
-    """
-    base, mark, index = name.partition("_")
-    return (base, index) if mark else (name[:1], name[1:])
 
 
 def cut(text: str, room: float, size: float = SMALL) -> str:
@@ -164,7 +149,7 @@ class Pen:
 
     def symbol(self, look: str, x: float, y: float, name: str, tail: str = "") -> None:
         """Write a symbol with its index, and what follows it, from its left end."""
-        self._add("symbol", look, (x, y), *split_symbol(name), tail)
+        self._add("symbol", look, (x, y), *split_name(name), tail)
 
     def upright(self, look: str, x: float, y: float, text: str) -> None:
         """Write a text that reads upwards, centred on a place."""

@@ -10,13 +10,12 @@ from collections.abc import Iterator, Sequence
 
 from hystkit.circuit.design import Design
 from hystkit.circuit.elements import FIXED_NODES, Resistor
-from hystkit.export.page.pen import rounded, split_symbol, symbol_spans, symbol_width, text_width
+from hystkit.export.page.pen import rounded, symbol_spans, symbol_width, text_width
 from hystkit.figures.schematic import sheets_of, value_texts
 from hystkit.figures.schematic_sheet import CIRCLE, Body, Point, Sheet
-from hystkit.figures.schematic_symbols import DOT
-from hystkit.figures.schematic_symbols import _comparator as comparator_strokes
-from hystkit.figures.schematic_symbols import _terminal as terminal_strokes
+from hystkit.figures.schematic_symbols import DOT, comparator_strokes, terminal_strokes
 from hystkit.figures.schematic_text import Fit, Lettering, Spot, fitted, is_crowded
+from hystkit.symbolic.symbols import split_name
 
 #: Width for which it is laid out; it is scaled to the room that there is [px].
 WIDTH = 400
@@ -152,7 +151,7 @@ def _text(fit: Fit, spot: Spot) -> str:
     mark = f' data-value="{html.escape(label.key)}"' if label.kind == "value" else ""
     inner = html.escape(spot.text)
     if label.kind == "name":
-        inner = symbol_spans(*split_symbol(label.key))
+        inner = symbol_spans(*split_name(label.key))
     return f'<text class="{looks}" {where}{mark}>{inner}</text>'
 
 

@@ -36,7 +36,8 @@ def trip_cells(levels: Levels) -> dict[str, str]:
         cells[f"{trip}.measurand"] = _in_measurand(levels, trip)
         span: Interval | None = getattr(levels, f"{trip}_interval", None)
         known = span if span and all(map(math.isfinite, span)) else None
-        cells[f"{trip}.within"] = written_span(*known) if known else ""
+        missing = levels.not_evaluated if trip in ("upper", "lower") else ""
+        cells[f"{trip}.within"] = written_span(*known) if known else missing
         cells[f"{trip}.range"] = _range(levels, known) if known else ""
     return cells
 

@@ -11,7 +11,7 @@ from urllib.parse import quote
 
 from hystkit.base.errors import Fault, InputError
 from hystkit.base.fields import Field, Viewed
-from hystkit.base.files import already_there, write_text
+from hystkit.base.files import ANOTHER_NAME, check_free, write_text
 from hystkit.circuit.design import Design
 from hystkit.export.page.document import Page
 from hystkit.export.page.static import static_fragment
@@ -89,7 +89,7 @@ def write_page(
     OutputExistsError
         If a file exists and `overwrite` is false; then nothing is written.
     InputError
-        If the file name has another ending.
+        If the file name has another ending, or a folder above it is a file.
 
     Notes
     -----
@@ -102,8 +102,7 @@ def write_page(
     page = Page(design)
     files = _separate(page, target) if separate_script else {target: standalone(page)}
     for file in files:
-        if file.exists() and not overwrite:
-            raise already_there(file, "another name, or overwrite=True")
+        check_free(file, ANOTHER_NAME, overwrite=overwrite)
     target.parent.mkdir(parents=True, exist_ok=True)
     for file, text in files.items():
         write_text(file, text, overwrite=overwrite)

@@ -36,6 +36,22 @@ REFUSED: list[tuple[Callable[[], Any], tuple[str, ...]]] = [
         ("total", "excitation", "not an interval", "linearity is outside"),
     ),
     (lambda: S.Potentiometer("10k", 0, **RANGE), ("excitation of a sensor is zero",)),
+    # A part remembers the unit that its text carried.
+    (lambda: S.CurrentLoop(hk.Part("2.5 V"), span=(0, 1)), ("burden is not in Ω",)),
+    (
+        lambda: S.Attenuator(hk.Part("5 V"), hk.Part("1 V", tol="1 %"), span=(0, 10)),
+        ("top is not in Ω", "bottom is not in Ω"),
+    ),
+    (
+        lambda: S.Potentiometer(hk.Part("5 V"), hk.Part("4.7 kΩ"), **RANGE),
+        ("total is not in Ω", "excitation is not in V"),
+    ),
+    (
+        lambda: S.SensorDivider(
+            NTC, hk.Part("1 V"), excitation=hk.Part("10 kΩ", tol=0.01), span=(0, 50)
+        ),
+        ("other is not in Ω", "excitation is not in V"),
+    ),
     (lambda: S.Potentiometer("10k", hk.Part(0), **RANGE), ("excitation of a sensor is zero",)),
     (
         lambda: S.SensorDivider(NTC, "-10k", "left", "x", span=(0, 50)),
@@ -125,6 +141,8 @@ def test_an_unknown_parameter_is_named_with_the_nearest() -> None:
 
 def test_texts_with_units_are_read() -> None:
     assert S.Rtd("1 kΩ").r0 == 1000
+    assert S.CurrentLoop(hk.Part("150 Ω", tol="1 %"), span=(0, 1)).burden == hk.Part(150, tol=0.01)
+    assert S.Potentiometer("10k", hk.Part("5 V"), **RANGE).excitation == hk.Part(5)
     assert S.DrivenSensor(S.Rtd(), "1 mA", "J", "5 V", span=(0, 1)).current_tol == 0.05
     assert S.CurrentLoop("R47", span=("-1", "2.5")).span == (-1, 2.5)
     assert S.ResistanceTable((0, 50, 100), ("32k65", "3k6", 680)).ohms == (32650, 3600, 680)

@@ -86,16 +86,26 @@ function acts(form, state, name) {
   return name === "leakage" ? !form.pushPull : true;
 }
 
+/** What is uncertain: resistances, then voltages and currents. */
+function uncertain(form, state) {
+  const box = toleranceBox(form, state);
+  const isResistance = ([name]) => form.parts.includes(name) || name === "r_high" || name === "r_low";
+  return [box.filter(isResistance), box.filter((entry) => !isResistance(entry))];
+}
+
+/** Why there are no intervals although tolerances are stated; empty otherwise. */
+function notEvaluated(form, state) {
+  return uncertain(form, state)[0].length > form.mostResistances ? TABLES.tooMany : "";
+}
+
 /**
  * Exact interval of either trip: its extremes lie in corners of the box. Voltages and currents act
  * by themselves, so that each corner of the resistances needs one evaluation for each of them.
  */
 function tripIntervals(form, state) {
-  const box = toleranceBox(form, state);
-  const isResistance = ([name]) => form.parts.includes(name) || name === "r_high" || name === "r_low";
-  const resistances = box.filter(isResistance);
-  const sources = box.filter((entry) => !isResistance(entry));
-  if (!box.length || resistances.length > form.mostResistances || !form.exact) return [null, null];
+  const [resistances, sources] = uncertain(form, state);
+  const none = !resistances.length && !sources.length;
+  if (none || notEvaluated(form, state) || !form.exact) return [null, null];
   const found = [[Infinity, -Infinity], [Infinity, -Infinity]];
   let possible = resistances.every(([name, pair]) => pair[0] > 0 || !form.parts.includes(name));
   for (let corner = 0; corner < 2 ** resistances.length && possible; corner += 1) {
@@ -159,7 +169,7 @@ function evaluate(form, state) {
     reference: values.V_REF ?? null,
     common_mode: from === null || upTo === null ? null : [vEe + from, vCc - upTo],
     signal_span: span && span.sort((a, b) => a - b),
-    ok: status === "OK", message: TABLES.status[status],
+    ok: status === "OK", message: TABLES.status[status], not_evaluated: notEvaluated(form, state),
   };
 }
 

@@ -290,7 +290,8 @@ function tripCells(levels) {
     const known = span && finite(...span).length === 2;
     const digits = trip === "width" ? 4 : tripDigits(value, levels.width);
     cells[`${trip}.volts`] = written(value, "V", digits);
-    cells[`${trip}.within`] = known ? writtenSpan(...span) : "";
+    const missing = trip === "upper" || trip === "lower" ? levels.not_evaluated : "";
+    cells[`${trip}.within`] = known ? writtenSpan(...span) : missing;
     cells[`${trip}.measurand`] = levels.signal ? measurandCell(levels, trip) : "";
     // A ratiometric sensor moves with the supply as the trips do: no interval is stated for it.
     const apart = known && levels.signal && !levels.signal.ratiometric;

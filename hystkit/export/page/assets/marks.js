@@ -154,7 +154,8 @@ function tripsInWords(levels) {
     return first.replace(trip, `${trip} trip`) + (second ? ` (${second})` : "")
       + (span ? ` within ${writtenSpan(...span)}` : "");
   });
-  return `${parts[0]}, ${parts[1]}, width ${written(levels.width, "V", 3)}`;
+  parts.push(`width ${written(levels.width, "V", 3)}`);
+  return [...parts, levels.not_evaluated].filter(Boolean).join(", ");
 }
 
 function rulerInWords(levels) {

@@ -15,8 +15,8 @@ function textWidth(text, size = SMALL, bold = false) {
 }
 
 function splitSymbol(name) {
-  const mark = name.indexOf("_");
-  return mark < 0 ? [name.slice(0, 1), name.slice(1)] : [name.slice(0, mark), name.slice(mark + 1)];
+  const together = name.replace("_", "");
+  return [together.slice(0, 1), together.slice(1)];
 }
 
 function symbolWidth(name, tail = "", size = SMALL) {
