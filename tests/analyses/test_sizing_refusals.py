@@ -193,8 +193,17 @@ single supply, divider reference, push-pull""",
         """\
         the tolerance of the free parts is outside its range.
           asked   tol=5
-          rule    0 <= tol < 1 (a fraction of the value)
-          try     a fraction such as 0.01, or the text "1 %\"""",
+          rule    0 % <= tol < 100 %
+          try     tol="1 %\"""",
+    ),
+    "temperature coefficient in volts": (
+        {**NUMBERS, "tempco": {"R_T": "50 ppm/K", "R_B": "1 mV", "R_F": 0.0}},
+        hk.InputError,
+        """\
+        tempco is not in 1/K.
+          asked   a number in 1/K
+          have    '1 mV'
+          try     100 ppm/K""",
     ),
     "temperature coefficient": (
         {**NUMBERS, "tempco": 0.03, "temperature": (-20, 60), "free": ("R_F",),

@@ -8,7 +8,7 @@ from typing import Any
 
 from hystkit.analyses.sizing.limits import Limits
 from hystkit.analyses.sizing.request import Request
-from hystkit.analyses.sizing.requirement import SOURCE, Requirement
+from hystkit.analyses.sizing.requirement import SOURCE, Requirement, is_source
 from hystkit.analyses.sizing.stock import Settings, Stock
 from hystkit.base.errors import DesignError, Fault, HystkitError, InputError
 from hystkit.circuit.design import Design, PartLike
@@ -181,10 +181,17 @@ class Ask:
             self.limits,
             self.excursion,
             chosen,
-            source is not None,
+            source is not None or self._gives_source(template, stock),
         )
         request.check()
         return request
+
+    def _gives_source(self, template: Design, stock: dict[str, Stock]) -> bool:
+        """Tell whether R_S, given beside trips in volts, is that of the signal's source."""
+        if self.requirement.load is not None or SOURCE in stock:
+            return False
+        given = template.parts.get(SOURCE) if SOURCE in template.stage.optional else None
+        return is_source(given, self.signal)
 
     def _stages(self) -> tuple[Stage, ...]:
         """Built-in forms that need nothing which was not given."""

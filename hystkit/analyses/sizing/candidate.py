@@ -17,6 +17,7 @@ from hystkit.base.errors import InputError
 from hystkit.base.fields import Field, Viewed
 from hystkit.base.quantity import code, show
 from hystkit.circuit.design import Design
+from hystkit.circuit.device import TYPICAL
 from hystkit.circuit.parts import Part
 from hystkit.numeric.sampling import Plan
 from hystkit.numeric.trips import TripPoints, trip_points
@@ -38,6 +39,8 @@ class BillLine:
         Resistance [Ohm].
     tol, tempco : float
         Relative tolerance, and magnitude of the temperature coefficient [1/K].
+    remark : str
+        What else has to be said about it.
     """
 
     reference: str
@@ -45,12 +48,14 @@ class BillLine:
     ohms: float | None = None
     tol: float = 0.0
     tempco: float = 0.0
+    remark: str = ""
 
     @property
     def rating(self) -> str:
-        """Tolerance and temperature coefficient, in words."""
+        """Tolerance, temperature coefficient and remark, in words."""
         found = [f"± {show(self.tol, '%')}"] if self.tol else []
         found += [f"{self.tempco * 1e6:g} ppm/K"] if self.tempco else []
+        found += [self.remark] if self.remark else []
         return ", ".join(found)
 
 
@@ -201,8 +206,10 @@ class Candidate(Viewed):
             BillLine(name, code(part.value, 6), part.value, part.tol, part.tempco)
             for name, part in self._fitted.items()
         ]
-        device = self.design.device.name
-        return (*parts, BillLine("U", device)) if device else tuple(parts)
+        device = self.design.device
+        if not device.name:
+            return tuple(parts)
+        return (*parts, BillLine("U", device.name, remark=TYPICAL if device.typical else ""))
 
     @property
     def _fitted(self) -> dict[str, Part]:
@@ -230,6 +237,15 @@ class Candidate(Viewed):
         if self.holds:
             return f"both windows hold, margin {show(margin, unit)}"
         return f"leaves a window by {show(-margin, unit)}"
+
+    @property
+    def outcome(self) -> str:
+        """The verdict, with the yield where windows were asked for."""
+        if self.expected_yield is None:
+            return self.verdict
+        share = self.expected_yield.value
+        text = f"{100 * share:.4g}"
+        return f"{self.verdict}; yield {text if share == 1 or text != '100' else '> 99.99'} %"
 
     @property
     def _room(self) -> tuple[float, str]:
@@ -295,7 +311,7 @@ class Sizing(Sequence[Candidate], Viewed):
     ----------
     candidates : tuple of Candidate
         Best first: by the error over all tolerances where windows were asked for, so that those
-        that hold come first, else by the nominal error.
+        that hold come first, else by the nominal error; those that leave a window by yield.
     asked : str
         What was asked for.
     searched : int
@@ -348,7 +364,7 @@ class Sizing(Sequence[Candidate], Viewed):
                 c.values,
                 "",
                 f"{show(float(c.trips.upper), 'V')} / {show(float(c.trips.lower), 'V')}, "
-                + c.verdict
+                + (c.verdict if c.holds else c.outcome)
                 + (f" ({c.design.stage.title})" if len(forms) > 1 else ""),
             )
             for rank, c in enumerate(self.candidates, 1)

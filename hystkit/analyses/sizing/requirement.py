@@ -14,15 +14,17 @@ from hystkit.base.quantity import show
 from hystkit.circuit.parts import Part
 from hystkit.circuit.reading import Quantity
 from hystkit.circuit.signals import Signal
+from hystkit.numeric.measurand import load_edges
 from hystkit.numeric.views import Interval
 
 #: A number, or a window (low, high).
 Wanted = Quantity | tuple[Quantity, Quantity]
-LOADS = ("high", "low")
 #: The part that stands for the resistance of the signal's source.
 SOURCE = "R_S"
 # Quantities in a window at which the source resistance is looked at.
 _PLACES = 9
+# Resistances are compared to this ratio.
+_CLOSE = 1e-9
 # A tolerance of one would let a resistance be zero.
 _ALMOST_ALL = 0.999
 
@@ -125,7 +127,7 @@ class Requirement:
             _volts(name, window, signal)
             for name, window in zip(self.names, (self.first, self.second), strict=True)
         )
-        lower, upper = (on, off) if self._on_is_lower(sense) else (off, on)
+        lower, upper = (on, off) if self.edges(sense)["on_at"] == "lower" else (off, on)
         return Target(upper, lower, v_cc if signal.ratiometric else None)
 
     def source_resistance(self, signal: Signal | None) -> Part | None:
@@ -167,22 +169,16 @@ class Requirement:
         dict
             "on_at" and "off_at" to "upper" or "lower"; empty for trips in volts.
         """
-        if self.load is None:
-            return {}
-        on, off = ("lower", "upper") if self._on_is_lower(sense) else ("upper", "lower")
-        return {"on_at": on, "off_at": off}
-
-    def _on_is_lower(self, sense: str) -> bool:
-        # The output goes high at the lower trip of an inverting stage, at the upper of others.
-        return (sense == "inverting") == (self.load == "high")
+        return {} if self.load is None else load_edges(sense, self.load)._asdict()
 
     def _check_order(self, sense: str, signal: Signal) -> None:
         middles = [sum(window) / 2 for window in (self.first, self.second)]
         on, off = (float(signal.volts(middle)) for middle in middles)
-        if (on < off) == self._on_is_lower(sense):
+        low_first = self.edges(sense)["on_at"] == "lower"
+        if (on < off) == low_first:
             return
         other = "non-inverting" if sense == "inverting" else "inverting"
-        at = "falls to the lower" if self._on_is_lower(sense) else "rises to the upper"
+        at = "falls to the lower" if low_first else "rises to the upper"
         raise InputError(
             f"a stage that is {sense} cannot switch the load in this order.",
             asked=self.text(signal.unit),
@@ -191,6 +187,29 @@ class Requirement:
             rule="the load goes on at the one trip and off at the other",
             remedy=f'a stage that is {other}, or load="{"low" if self.load == "high" else "high"}"',
         )
+
+
+def is_source(part: Part | None, signal: Signal | None) -> bool:
+    """Tell whether a resistance can be that of a signal's source.
+
+    Parameters
+    ----------
+    part : Part or None
+        R_S of a design, where it has one.
+    signal : Signal or None
+        Of the same design.
+
+    Returns
+    -------
+    bool
+        Whether the source has this resistance somewhere in its span, with some value of its
+        parameters.
+    """
+    if part is None or signal is None:
+        return False
+    places = np.linspace(*signal.span, _PLACES)
+    found = [signal.source_resistance(places, **corner) for corner in signal_corners(signal)]
+    return bool(np.min(found) * (1 - _CLOSE) <= part.value <= np.max(found) * (1 + _CLOSE))
 
 
 def signal_corners(signal: Signal) -> list[dict[str, float]]:

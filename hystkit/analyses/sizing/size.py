@@ -11,6 +11,7 @@ from hystkit.analyses.sizing.advice import reason, suggestions
 from hystkit.analyses.sizing.ask import Ask
 from hystkit.analyses.sizing.candidate import Candidate, Sizing, Suggestion
 from hystkit.analyses.sizing.limits import Limits
+from hystkit.analyses.sizing.ranking import COMPARED, ranked, rounded_error
 from hystkit.analyses.sizing.request import Request
 from hystkit.analyses.sizing.requirement import Wanted
 from hystkit.analyses.sizing.stock import Range, Settings, Source
@@ -96,7 +97,9 @@ def size(
     Sizing
         Candidates, best first: with windows by the error over all tolerances, else by the nominal
         error. The error is the largest distance of a trip from what is wanted, with windows in
-        half-widths of the window. Among equals, parts near 30 kOhm come first.
+        half-widths of the window. Among equals, parts near 30 kOhm come first. Windows that cannot
+        be held are another matter: candidates that leave one stand in the order of their yield,
+        chosen among the 32 combinations of smallest error.
 
     Raises
     ------
@@ -109,10 +112,11 @@ def size(
     Notes
     -----
     Exact: no combination of the values allowed, of all there are, has a smaller error than those
-    returned; see `hystkit.analyses.sizing.bounds` for the proof. Static: delay and noise are
+    found; see `hystkit.analyses.sizing.bounds` for the proof. Static: delay and noise are
     outside. Where a load is to switch at quantities, the resistance of the signal's source comes in
     as R_S, with a tolerance that covers the windows and the signal's own tolerances; give R_S
-    among `parts` to replace it.
+    among `parts` to replace it. With trips in volts, an R_S among `parts` that the source can have
+    stands for it, and is no part of the bill.
 
     Examples
     --------
@@ -155,10 +159,10 @@ def _in_one_form(
 
     try:
         request = ask.request(stage, free)
-        found = request.candidates(count)
+        found = request.candidates(max(count, COMPARED))
     except InfeasibleError as error:
         raise _with_another_form(error, others()) if suggest else error from None
-    return _result(ask, [request], found, others() if suggest else None, {})
+    return _result(ask, [request], found, count, others() if suggest else None, {})
 
 
 def _over_all_forms(ask: Ask, count: int, suggest: bool) -> Sizing:
@@ -166,12 +170,12 @@ def _over_all_forms(ask: Ask, count: int, suggest: bool) -> Sizing:
     found: list[tuple[float, int, Candidate, Request]] = []
     for title, request in [*requests.items()]:
         try:
-            candidates = request.candidates(count)
+            candidates = request.candidates(max(count, COMPARED))
         except HystkitError as error:
             refused[title] = error
             del requests[title]
             continue
-        found += [(_rank(c), len(found) + i, c, request) for i, c in enumerate(candidates)]
+        found += [(rounded_error(c), len(found) + i, c, request) for i, c in enumerate(candidates)]
     if not requests:
         told = [fault for error in refused.values() for fault in error.faults]
         kind = (
@@ -186,7 +190,8 @@ def _over_all_forms(ask: Ask, count: int, suggest: bool) -> Sizing:
     return _result(
         ask,
         [order[0], *(r for r in requests.values() if r is not order[0])],
-        tuple(entry[2] for entry in found[:count]),
+        tuple(entry[2] for entry in found[: max(count, COMPARED)]),
+        count,
         [] if suggest else None,
         reasons,
     )
@@ -196,6 +201,7 @@ def _result(
     ask: Ask,
     requests: list[Request],
     found: tuple[Candidate, ...],
+    count: int,
     others: Iterable[Request] | None,
     refused: dict[str, str],
 ) -> Sizing:
@@ -205,7 +211,8 @@ def _result(
         tried = tuple(suggestions(requests[0], others, found[0] if found else None))
     unit = "V" if ask.signal is None else ask.signal.unit
     searched = sum(request.grid.size for request in requests)
-    return Sizing(found, ask.requirement.text(unit), searched, refused, why, tried)
+    shown = ranked(found)[:count]
+    return Sizing(shown, ask.requirement.text(unit), searched, refused, why, tried)
 
 
 def _with_another_form(error: InfeasibleError, others: Iterable[Request]) -> InfeasibleError:
@@ -222,11 +229,6 @@ def _with_another_form(error: InfeasibleError, others: Iterable[Request]) -> Inf
                 fault.problem, asked=fault.asked, have=fault.have, rule=fault.rule, remedy=remedy
             )
     return error
-
-
-def _rank(candidate: Candidate) -> float:
-    error = candidate.worst_error if candidate.target.has_windows else candidate.error
-    return round(error, 9)
 
 
 def _limits(given: Limits | Mapping[str, Quantity] | None, faults: list[Fault]) -> Limits:

@@ -150,7 +150,7 @@ class Settings:
             "series": coarsest,
             "ranges": lambda values: values[0],
             "tol": lambda values: max(values, key=parse_percent),
-            "tempco": lambda values: max(values, key=lambda v: read(v, name="tempco")),
+            "tempco": lambda values: max(values, key=_read_tempco),
         }
         changes = {}
         for label, given in vars(self).items():
@@ -166,8 +166,8 @@ class Settings:
             return None
         series, drawer = _read_source(chosen["series"], faults)
         ends = _read_range(chosen["ranges"], faults)
-        tol = _read_fraction("tol", chosen["tol"], faults)
-        tempco = abs(collect(faults, lambda: read(chosen["tempco"], name="tempco")))
+        tol = _read_tol(chosen["tol"], faults)
+        tempco = collect(faults, lambda: _read_tempco(chosen["tempco"]))
         if len(faults) > before:
             return None
         stock = Stock(series, ends, tol, tempco, drawer)
@@ -241,7 +241,12 @@ def _read_range(given: Any, faults: list[Fault]) -> Interval:
     return (ends[0], ends[1]) if len(ends) == 2 else (math.nan, math.nan)
 
 
-def _read_fraction(name: str, given: Any, faults: list[Fault]) -> float:
+def _read_tempco(given: Quantity) -> float:
+    """Read a temperature coefficient, of which the magnitude counts [1/K]."""
+    return abs(read(given, unit="1/K", name="tempco"))
+
+
+def _read_tol(given: Any, faults: list[Fault]) -> float:
     try:
         number = parse_percent(given)
     except HystkitError as error:
@@ -251,9 +256,9 @@ def _read_fraction(name: str, given: Any, faults: list[Fault]) -> float:
         faults.append(
             Fault(
                 "the tolerance of the free parts is outside its range.",
-                asked=f"{name}={given!r}",
-                rule="0 <= tol < 1 (a fraction of the value)",
-                remedy='a fraction such as 0.01, or the text "1 %"',
+                asked=f"tol={given!r}",
+                rule="0 % <= tol < 100 %",
+                remedy='tol="1 %"',
             )
         )
     return number

@@ -6,11 +6,12 @@ import math
 from collections.abc import Iterable, Mapping
 from functools import partial
 
-from hystkit.analyses.sizing.requirement import LOADS, Requirement, Wanted, shown_window
+from hystkit.analyses.sizing.requirement import Requirement, Wanted, shown_window
 from hystkit.base.errors import Fault
 from hystkit.base.quantity import read
 from hystkit.circuit.reading import collect, members
 from hystkit.circuit.signals import Signal
+from hystkit.numeric.measurand import LOADS
 from hystkit.numeric.views import Interval
 
 

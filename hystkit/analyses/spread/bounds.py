@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import heapq
+from collections.abc import Sequence
 from dataclasses import dataclass
 from itertools import count
 from math import nan
@@ -58,7 +59,9 @@ class _Maximum:
     boxes: int
 
 
-def bounds(design: Design, box: dict[str, Interval]) -> dict[str, Bound]:
+def bounds(
+    design: Design, box: dict[str, Interval], kinds: Sequence[str] = KINDS
+) -> dict[str, Bound]:
     """Exact range of upper, lower, width and middle over a box.
 
     Parameters
@@ -67,6 +70,8 @@ def bounds(design: Design, box: dict[str, Interval]) -> dict[str, Bound]:
         Gives every value that the box leaves out.
     box : dict of str to pair of float
         Lowest and highest value by name.
+    kinds : sequence of str, default all four
+        Which of them, "width" among them.
 
     Returns
     -------
@@ -85,11 +90,11 @@ def bounds(design: Design, box: dict[str, Interval]) -> dict[str, Bound]:
     """
     found = corners(design, box)
     formulas = fractions(design, box)
-    ranges = {kind: _bound(kind, formulas[kind], found, design, box) for kind in KINDS}
+    ranges = {kind: _bound(kind, formulas[kind], found, design, box) for kind in kinds}
     if found.possible and ranges["width"].interval[0] > -ranges["width"].gap:
         return ranges
     impossible = Bound((nan, nan), CORNERS, nan, {}, {})
-    return dict.fromkeys(KINDS, impossible)
+    return dict.fromkeys(kinds, impossible)
 
 
 def is_monotone(fraction: Fraction, design: Design, box: dict[str, Interval]) -> bool:

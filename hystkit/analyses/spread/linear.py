@@ -2,9 +2,10 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterable, Mapping
+from collections.abc import Callable, Iterable, Mapping
 from dataclasses import dataclass
 from math import fsum, hypot
+from typing import Any
 
 from hystkit.base.frozen import Named
 from hystkit.circuit.design import Design
@@ -83,7 +84,7 @@ def shares(found: Mapping[str, Mapping[str, float]]) -> Named[Named[float]]:
     -------
     Named of Named
         By kind, then by name: squared effect over the sum of all [1], the largest first. All zero
-        where nothing acts.
+        where nothing acts, or the effects are not known.
     """
     return Named({kind: Named(_shares(by_name)) for kind, by_name in found.items()})
 
@@ -129,10 +130,50 @@ def per_kelvin(design: Design) -> Named[Drift]:
     )
 
 
+def derivative(function: Callable[[float], Any], at: float, step: float) -> float:
+    """Differentiate a function that is known by its values only.
+
+    Parameters
+    ----------
+    function : callable
+        Of one number.
+    at, step : float
+        Where, and distance of the points that are taken.
+
+    Returns
+    -------
+    float
+        By the central difference of sixth order, whose error falls with the sixth power of the
+        step.
+    """
+    reaches = {1: 3 / 4, 2: -3 / 20, 3: 1 / 60}
+    pairs = ((w, function(at + n * step), function(at - n * step)) for n, w in reaches.items())
+    return fsum(weight * float(above - below) for weight, above, below in pairs) / step
+
+
+def largest(by_name: Mapping[str, float], count: int = 4) -> str | None:
+    """Write the largest shares in one line.
+
+    Parameters
+    ----------
+    by_name : mapping of str to float
+        Shares, the largest first.
+    count : int, default 4
+        How many.
+
+    Returns
+    -------
+    str or None
+        Such as "V_CC 88%, R_B 8%"; None where nothing acts.
+    """
+    ranked = [(name, share) for name, share in by_name.items() if share > 0]
+    return ", ".join(f"{name} {share:.0%}" for name, share in ranked[:count]) or None
+
+
 def _shares(by_name: Mapping[str, float]) -> dict[str, float]:
     total = fsum(effect**2 for effect in by_name.values())
     ranked = sorted(by_name.items(), key=lambda pair: -(pair[1] ** 2))
-    return {name: effect**2 / total if total else 0.0 for name, effect in ranked}
+    return {name: effect**2 / total if total > 0 else 0.0 for name, effect in ranked}
 
 
 def _drift(rates: Iterable[float]) -> Drift:

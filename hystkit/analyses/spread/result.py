@@ -167,7 +167,7 @@ class Spread(Viewed):
 
     @cached_property
     def measurand(self) -> MeasurandSpread | None:
-        """The same in the unit of the signal; None without a signal."""
+        """The same in the unit of the signal, its own tolerances included; None without one."""
         signal = self.design.signal
         return None if signal is None else MeasurandSpread(self, signal)
 
@@ -186,9 +186,8 @@ class Spread(Viewed):
         sigma = f"{self.plan.sigmas:g} sigma, first order"
         rows += [Field(f"{kind} ±", self.rss[kind], "V", sigma) for kind in ("upper", "width")]
         for kind in ("upper", "width"):
-            ranked = [(n, share) for n, share in self.contributions[kind].items() if share > 0]
-            text = ", ".join(f"{name} {share:.0%}" for name, share in ranked[:4])
-            rows.append(Field(f"{kind} depends on", text or None, "", linear.MEASURE))
+            text = linear.largest(self.contributions[kind])
+            rows.append(Field(f"{kind} depends on", text, "", linear.MEASURE))
         rows += [Field(f"{k} per volt of V_CC", self.per_volt[k], "V/V") for k in KINDS[:2]]
         rows += [Field(f"{k} per kelvin", self.per_kelvin[k].worst, "V/K") for k in KINDS[:2]]
         return rows + (list(self.measurand._fields()) if self.measurand else [])

@@ -7,6 +7,7 @@ from numbers import Integral, Real
 from typing import Any
 
 from hystkit.analyses.spread.result import Spread
+from hystkit.analyses.spread.signal_box import signal_quantities
 from hystkit.base.errors import Fault, InputError
 from hystkit.base.nearest import unknown_name_fault
 from hystkit.circuit.design import Design
@@ -30,7 +31,8 @@ def spread(
     ----------
     design : Design
         Tolerances and temperature coefficients stand at its parts and levels, a tolerance at its
-        supply, limits and the offset's drift at its device.
+        supply, limits and the offset's drift at its device; those of its signal count in the
+        measurand.
     temperature : pair of float, optional
         Range in service [°C]; values and tolerances hold at 25 °C. Without it nothing drifts.
     samples : int, default 65536
@@ -54,8 +56,8 @@ def spread(
     InputError
         Naming every argument that cannot be used.
     DesignError
-        If drift takes a resistance to zero, or more resistances have a tolerance than all
-        combinations can be evaluated of.
+        If drift takes a resistance, or a part of the signal, to zero, or more resistances have a
+        tolerance than all combinations can be evaluated of.
 
     Notes
     -----
@@ -78,7 +80,11 @@ def spread(
         raise InputError.of("this spread", faults)
     ends = None if temperature is None else (float(temperature[0]), float(temperature[1]))
     plan = Plan(int(samples), int(seed), distribution, float(sigmas))
-    return Spread(design, uncertain(design, ends), plan, ends)
+    box = uncertain(design, ends)
+    if design.signal is not None:
+        # Refuses a drift to zero, as the line above does for the parts of the stage.
+        signal_quantities(design.signal, box.excursion)
+    return Spread(design, box, plan, ends)
 
 
 def _faults(
