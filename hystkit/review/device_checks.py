@@ -5,6 +5,7 @@ from __future__ import annotations
 from collections.abc import Iterator
 
 from hystkit.base.quantity import show
+from hystkit.circuit.classes import device_classes
 from hystkit.review.evidence import Evidence
 from hystkit.review.finding import Finding
 from hystkit.review.trip_checks import Check
@@ -160,4 +161,43 @@ def loop_gain(evidence: Evidence) -> Iterator[Finding]:
     )
 
 
-DEVICE_CHECKS: tuple[Check, ...] = (common_mode, output_current, loading, loop_gain)
+def typical_values(evidence: Evidence) -> Iterator[Finding]:
+    """Tell which values of the device belong to a class, and whether it has this output.
+
+    Parameters
+    ----------
+    evidence : Evidence
+        The design.
+
+    Yields
+    ------
+    Finding
+        One while a value is typical of a class, one where the class has the other output.
+    """
+    device, output = evidence.design.device, evidence.design.stage.output
+    if not device.typical:
+        return
+    known = device_classes.get(device.name)
+    if known is not None and known.output != output:
+        yield Finding(
+            "device class",
+            "warning",
+            f"the {device.name} has a {known.output} output, the stage has a {output} one",
+            remedy="a class with the output of the stage, or the other output",
+        )
+    names = ", ".join(name.replace("_", " ") for name in device.typical)
+    yield Finding(
+        "device values",
+        "note",
+        f"typical of {f'the {device.name}' if device.name else 'a class'}: {names}",
+        remedy="replace them from the datasheet of the device",
+    )
+
+
+DEVICE_CHECKS: tuple[Check, ...] = (
+    common_mode,
+    output_current,
+    loading,
+    loop_gain,
+    typical_values,
+)

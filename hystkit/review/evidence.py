@@ -10,6 +10,8 @@ from typing import Any
 
 import numpy as np
 
+from hystkit.analyses.cycle.result import Cycle
+from hystkit.analyses.cycle.steady import steady_cycle
 from hystkit.circuit.design import Design
 from hystkit.circuit.netlist import netlist
 from hystkit.numeric.compile import kernel
@@ -20,8 +22,11 @@ from hystkit.numeric.operating import (
     input_resistance,
     operating_point,
 )
-from hystkit.numeric.trips import trip_points
+from hystkit.numeric.source import trips_at_source
+from hystkit.numeric.trips import TripPoints, trip_points
 from hystkit.numeric.views import Levels
+from hystkit.review.axis import Axis
+from hystkit.review.service import NOTHING_DECLARED, Service
 
 STATES = ("high", "low")
 
@@ -40,17 +45,55 @@ class Evidence:
         Declared safe state of the load.
     start : {"high", "low"} or None
         Output state that the stage is made to start in; None where nothing is provided.
+    service : Service
+        What is declared about service.
     """
 
     design: Design
     load: str = "high"
     safe: str | None = None
     start: str | None = None
+    service: Service = NOTHING_DECLARED
 
     @cached_property
     def levels(self) -> Levels:
         """Everything on the volt axis."""
         return levels(self.design)
+
+    @cached_property
+    def at_source(self) -> TripPoints:
+        """Both trips with the source resistance that the signal has at each of them."""
+        return trips_at_source(self.design)
+
+    def source_ohms(self) -> tuple[float, float]:
+        """Resistance of the signal's source at the upper and at the lower trip [Ohm].
+
+        Within the signal's span; at the nearer end of it where a trip lies outside.
+        """
+        signal = self.design.signal
+        assert signal is not None
+        trips = (self.at_source.upper, self.at_source.lower)
+        places = (np.clip(signal.quantity(trip), *signal.span) for trip in trips)
+        upper, lower = (float(signal.source_resistance(place)) for place in places)
+        return upper, lower
+
+    @cached_property
+    def axis(self) -> Axis:
+        """The band in the unit of the signal, with the edges of the load."""
+        return Axis.of(self.design, self.load)
+
+    @cached_property
+    def cycle(self) -> Cycle | None:
+        """Steady cycle of the declared plant between the trips; None without a plant."""
+        plant = self.service.plant
+        return None if plant is None else steady_cycle(plant, *self.axis.edges(self.axis.width))
+
+    @property
+    def slope(self) -> float:
+        """Slope of the signal at the trips [V/s]: as declared, or of the cycle; NaN unknown."""
+        if self.service.slope is not None:
+            return self.service.slope
+        return math.nan if self.cycle is None else self.axis.passage(self.cycle, self.axis.width)
 
     @property
     def width(self) -> float:

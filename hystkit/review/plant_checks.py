@@ -1,14 +1,15 @@
-"""Checks on what surrounds the stage: the signal's reach, sensor faults, start-up."""
+"""Checks on what surrounds the stage: the signal's reach and source, sensor faults, start-up."""
 
 from __future__ import annotations
 
 import math
 from collections.abc import Iterator
 
-from hystkit.base.quantity import show
+from hystkit.base.quantity import code, show
+from hystkit.numeric.source import SOURCE, has_resistance
 from hystkit.review.evidence import Evidence
 from hystkit.review.finding import Finding
-from hystkit.review.trip_checks import Check
+from hystkit.review.trip_checks import Check, share_of_width
 
 
 def reach(evidence: Evidence) -> Iterator[Finding]:
@@ -46,6 +47,43 @@ def reach(evidence: Evidence) -> Iterator[Finding]:
         "V",
         "" if margin > 0 else "trips inside the span, or the stage sticks in one state",
     )
+
+
+def source_resistance(evidence: Evidence) -> Iterator[Finding]:
+    """Check what the resistance of the signal's source does to the trips.
+
+    Parameters
+    ----------
+    evidence : Evidence
+        The design.
+
+    Yields
+    ------
+    Finding
+        How much of a tenth of the width is left by the move from the design's trips to those at
+        which the source has the resistance that it has there; none without a signal.
+    """
+    signal = evidence.design.signal
+    if signal is None:
+        return
+    name = "source resistance"
+    if not has_resistance(signal):
+        yield Finding(name, "pass", "the signal's source is stated without a resistance")
+        return
+    found, start = evidence.at_source, evidence.levels
+    move = float(max(abs(found.upper - start.upper), abs(found.lower - start.lower)))
+    remedies = ["a buffer behind the source"]
+    if evidence.design.stage.sense == "non-inverting":
+        remedies.append("a larger R_I")
+    text = ""
+    if not math.isnan(move):
+        ohms = sorted(evidence.source_ohms())
+        span = " to ".join(dict.fromkeys(show(end, "Ω", 3) for end in ohms))
+        text = f"the source has {span} at the trips and moves them by {show(move, 'V', 3)}"
+        if SOURCE in evidence.design.parts:
+            text += f" from where {code(evidence.design.parts[SOURCE].value)} puts them"
+        remedies.insert(0, f"{SOURCE}={code(sum(ohms) / 2, 3)} fitted in the design")
+    yield share_of_width(name, text, move, evidence.width, ", or ".join(remedies))
 
 
 def sensor_faults(evidence: Evidence) -> Iterator[Finding]:
@@ -127,4 +165,4 @@ def start_up(evidence: Evidence) -> Iterator[Finding]:
     )
 
 
-PLANT_CHECKS: tuple[Check, ...] = (reach, sensor_faults, start_up)
+PLANT_CHECKS: tuple[Check, ...] = (reach, source_resistance, sensor_faults, start_up)

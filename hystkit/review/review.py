@@ -2,6 +2,8 @@
 
 from __future__ import annotations
 
+from typing import Any
+
 from hystkit.base.errors import UnknownNameError
 from hystkit.base.nearest import unknown_name_fault
 from hystkit.circuit.design import Design
@@ -9,11 +11,18 @@ from hystkit.review.device_checks import DEVICE_CHECKS
 from hystkit.review.evidence import Evidence
 from hystkit.review.finding import SIGNS, Finding, Review
 from hystkit.review.plant_checks import PLANT_CHECKS
+from hystkit.review.service import service_of
+from hystkit.review.service_checks import SERVICE_CHECKS
 from hystkit.review.trip_checks import TRIP_CHECKS
 
 
 def review(
-    design: Design, *, load: str = "high", safe: str | None = None, start: str | None = None
+    design: Design,
+    *,
+    load: str = "high",
+    safe: str | None = None,
+    start: str | None = None,
+    **service: Any,
 ) -> Review:
     """Check a design against what usually goes wrong.
 
@@ -27,6 +36,9 @@ def review(
         State that the load must take when the sensor fails.
     start : {"high", "low"}, optional
         Output state that the stage is made to start in, by a reset or a capacitor.
+    **service : object
+        What is declared about service, as for `Service`: noise, slope, probability, plant,
+        starts_per_hour, min_on, min_off, drive, load_step.
 
     Returns
     -------
@@ -36,7 +48,9 @@ def review(
     Raises
     ------
     UnknownNameError
-        If one of the choices does not exist.
+        If one of the choices or declarations does not exist.
+    InputError
+        Naming every declaration that cannot be used.
 
     Notes
     -----
@@ -51,11 +65,11 @@ def review(
     'pass'
     """
     _check_choices(load, safe, start)
-    evidence = Evidence(design, load, safe, start)
+    evidence = Evidence(design, load, safe, start, service_of(service))
     if not evidence.levels.ok:
         text = f"no trip points: {evidence.levels.message}"
         return Review((Finding("order", "fault", text, remedy="other part values or levels"),))
-    checks = (*TRIP_CHECKS, *DEVICE_CHECKS, *PLANT_CHECKS)
+    checks = (*TRIP_CHECKS, *DEVICE_CHECKS, *PLANT_CHECKS, *SERVICE_CHECKS)
     found = [finding for check in checks for finding in check(evidence)]
     return Review(tuple(sorted(found, key=lambda f: list(SIGNS).index(f.severity))))
 

@@ -9,7 +9,7 @@ from itertools import product
 import numpy as np
 
 from hystkit.base.quantity import show
-from hystkit.numeric.extremes import trip_intervals
+from hystkit.numeric.extremes import not_evaluated, trip_intervals
 from hystkit.review.evidence import Evidence
 from hystkit.review.finding import Finding
 
@@ -17,6 +17,8 @@ Check = Callable[[Evidence], Iterator[Finding]]
 
 #: Share of the width that an error may take, common practice: a tenth.
 SMALL_SHARE = 0.1
+#: Symbols of the bias currents, and the device fields that hold them.
+_BIAS = {"I_BP": "bias_plus", "I_BN": "bias_minus"}
 
 
 def order(evidence: Evidence) -> Iterator[Finding]:
@@ -34,8 +36,12 @@ def order(evidence: Evidence) -> Iterator[Finding]:
     """
     intervals = trip_intervals(evidence.design)
     if intervals is None:
+        why = not_evaluated(evidence.design)
         yield Finding(
-            "order", "note", "no tolerances stated: trips are nominal only", remedy="state them"
+            "order",
+            "note",
+            why or "no tolerances stated: trips are nominal only",
+            remedy="no tolerance on those that matter least" if why else "state them",
         )
         return
     (upper_low, upper_high), (lower_low, lower_high) = intervals
@@ -76,14 +82,12 @@ def offset(evidence: Evidence) -> Iterator[Finding]:
     Finding
         How much of a tenth of the width the offset leaves.
     """
-    device = evidence.design.device
-    low, high = device.limits.get("offset", (device.offset, device.offset))
-    largest = max((low, high), key=abs)
+    largest = _largest_offset(evidence)
     if largest == 0:
         yield Finding("offset", "note", "input offset not stated", remedy="the datasheet's limits")
         return
-    move = evidence.moves({"V_OS": 0.0}, V_OS=largest)
-    yield _share(
+    move = _offset_move(evidence)
+    yield share_of_width(
         "offset",
         f"an offset of {show(largest, 'V')} moves the trips by {show(move, 'V', 3)}",
         move,
@@ -105,17 +109,12 @@ def bias(evidence: Evidence) -> Iterator[Finding]:
     Finding
         How much of a tenth of the width they leave.
     """
-    device = evidence.design.device
-    fields = {"I_BP": "bias_plus", "I_BN": "bias_minus"}
-    ends = [device.limits.get(f, (getattr(device, f),) * 2) for f in fields.values()]
-    if not np.any(ends):
+    if not np.any(_bias_ends(evidence)):
         yield Finding("bias", "note", "bias currents not stated", remedy="the datasheet's limits")
         return
-    # Both currents act at once, each at either of its limits.
-    corners = np.array(list(product(*ends))).T
-    move = evidence.moves(dict.fromkeys(fields, 0.0), **dict(zip(fields, corners, strict=True)))
+    move = _bias_move(evidence)
     seen = evidence.input_resistances()
-    yield _share(
+    yield share_of_width(
         "bias",
         f"bias currents move a trip by {show(move, 'V', 3)}; the inputs see"
         f" {show(seen['plus'], 'Ω', 3)} (plus) and {show(seen['minus'], 'Ω', 3)} (minus)",
@@ -150,7 +149,7 @@ def supply(evidence: Evidence) -> Iterator[Finding]:
     names = ("V_CC", "V_EE")[: 1 + rails.split]
     corners = np.array(list(product(*ends[: len(names)]))).T
     move = evidence.moves({}, **dict(zip(names, corners, strict=True)))
-    yield _share(
+    yield share_of_width(
         "supply",
         f"{rate}, {show(move, 'V', 3)} over its tolerance",
         move,
@@ -159,7 +158,59 @@ def supply(evidence: Evidence) -> Iterator[Finding]:
     )
 
 
-def _share(name: str, text: str, move: float, width: float, remedy: str) -> Finding:
+def error_move(evidence: Evidence) -> float:
+    """Give how far offset and bias currents move a trip together.
+
+    Parameters
+    ----------
+    evidence : Evidence
+        The design.
+
+    Returns
+    -------
+    float
+        [V]; 0 where neither is stated.
+    """
+    return _offset_move(evidence) + _bias_move(evidence)
+
+
+def _largest_offset(evidence: Evidence) -> float:
+    device = evidence.design.device
+    return max(device.limits.get("offset", (device.offset, device.offset)), key=abs)
+
+
+def _offset_move(evidence: Evidence) -> float:
+    return evidence.moves({"V_OS": 0.0}, V_OS=_largest_offset(evidence))
+
+
+def _bias_ends(evidence: Evidence) -> list[tuple[float, float]]:
+    device = evidence.design.device
+    return [device.limits.get(f, (getattr(device, f),) * 2) for f in _BIAS.values()]
+
+
+def _bias_move(evidence: Evidence) -> float:
+    # Both currents act at once, each at either of its limits.
+    corners = np.array(list(product(*_bias_ends(evidence)))).T
+    return evidence.moves(dict.fromkeys(_BIAS, 0.0), **dict(zip(_BIAS, corners, strict=True)))
+
+
+def share_of_width(name: str, text: str, move: float, width: float, remedy: str) -> Finding:
+    """Judge what moves a trip against the width.
+
+    Parameters
+    ----------
+    name, text : str
+        Of the finding.
+    move, width : float
+        Largest move of a trip, and the nominal width [V].
+    remedy : str
+        What to change where it is too much.
+
+    Returns
+    -------
+    Finding
+        A pass up to a tenth of the width, a fault from the whole of it.
+    """
     allowed = SMALL_SHARE * width
     if math.isnan(move):
         return Finding(

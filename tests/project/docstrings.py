@@ -25,7 +25,7 @@ SECTIONS = (
 UNITS = {
     "1", "%", "V", "mV", "A", "mA", "µA", "Ω", "kΩ", "Ohm", "kOhm", "S", "F", "s", "ms", "h", "Hz",
     "1/s", "1/h", "K", "°C", "1/K", "ppm/K", "W", "V/s", "V/K", "V/V", "V/Ω", "V/Ohm", "V/unit",
-    "unit", "unit/s", "unit/V", "px", "in", "dpi", "m", "bytes", "B",
+    "unit", "unit/s", "unit/V", "px", "in", "dpi", "m", "bytes", "B", "H", "J", "C", "V/√Hz",
 }  # fmt: skip
 
 

@@ -401,7 +401,8 @@ def test_a_design_with_everything_in_order_passes_everything() -> None:
     assert odd == {"sensor short": "fault"}
     assert {f.name for f in found} == {
         "order", "offset", "bias", "supply", "common mode", "output high", "output low",
-        "loading", "loop gain", "reach", "sensor open", "sensor short", "start-up",
+        "loading", "loop gain", "reach", "source resistance", "sensor open", "sensor short",
+            "start-up",
     }  # fmt: skip
     assert all(not f.remedy for f in found if f.severity == "pass")
 
