@@ -1,6 +1,8 @@
 """Pictures: a result in, artists out; nothing about the circuit is computed here."""
 
 from hystkit.figures.contributions import ContributionsPicture, contributions
+from hystkit.figures.cycle import CyclePicture, cycle
+from hystkit.figures.hunting import HuntingPicture, hunting
 from hystkit.figures.loop import LoopPicture, loop
 from hystkit.figures.picture import Picture
 from hystkit.figures.ruler import RulerPicture, ruler
@@ -13,6 +15,8 @@ __all__ = [
     "MARKS",
     "THEMES",
     "ContributionsPicture",
+    "CyclePicture",
+    "HuntingPicture",
     "LoopPicture",
     "Mark",
     "Picture",
@@ -23,6 +27,8 @@ __all__ = [
     "TimelinePicture",
     "WindowedSpread",
     "contributions",
+    "cycle",
+    "hunting",
     "loop",
     "ruler",
     "schematic",

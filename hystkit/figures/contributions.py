@@ -2,13 +2,13 @@
 
 from __future__ import annotations
 
-from collections.abc import Hashable
+from collections.abc import Hashable, Mapping
 
 from matplotlib.axes import Axes
 
 from hystkit.analyses.spread.result import Spread
 from hystkit.figures.drafting import SHADE, Ink, Tag, box, lettered, level_marker, segments, stretch
-from hystkit.figures.lettering import one_line
+from hystkit.figures.lettering import one_line, short_unit
 from hystkit.figures.picture import Picture
 from hystkit.figures.ruler_plan import EDGE
 from hystkit.figures.theme import Theme, symbol
@@ -24,6 +24,8 @@ _NAME_ROOM, _PERCENT_ROOM, _GAP = 92.0, 44.0, 14.0
 class ContributionsPicture(Picture[Spread]):
     """Share of each quantity in the variance of upper, lower and width.
 
+    With a signal, in the variance of what it reads there, its own parameters among the rest.
+
     Parameters
     ----------
     theme : str or Theme, default "light"
@@ -35,19 +37,22 @@ class ContributionsPicture(Picture[Spread]):
     min_width_px = 360
 
     def _layout_key(self, data: Spread) -> Hashable:
-        self._names = _rows(data)
-        return self._names
+        self._names, self._unit = _rows(data), _unit(data)
+        return self._names, self._unit
 
     def _lay_out(self, data: Spread) -> None:
         page, theme = self._lay_out_page(), self._theme
         rows = len(self._names)
+        muted = Ink(theme.muted, "small")
         widths = [ink.width(text) for text, ink in (_named(theme, n) for n in self._names)]
+        widths.append(muted.width(self._unit))
         self._gutter = max(widths, default=0.0) + 8
         room = (self._width_px - 2 * EDGE - self._gutter) / len(KINDS)
         self._room = room - _GAP - _PERCENT_ROOM
         self._starts = {
             kind: EDGE + self._gutter + number * room for number, kind in enumerate(KINDS)
         }
+        lettered(page, self._unit, (EDGE + self._gutter - 8, 17), muted, "right")
         for number, name in enumerate(self._names):
             self._name_row(page, name, _HEAD + (number + 0.5) * _PITCH + 4)
         bottom = _HEAD + max(rows, 1) * _PITCH
@@ -57,7 +62,7 @@ class ContributionsPicture(Picture[Spread]):
         if not rows:
             text = "nothing is uncertain: no tolerance, drift or limits are stated"
             text = one_line(text, self._width_px - 2 * EDGE, "small")
-            lettered(page, text, (EDGE, _HEAD + _PITCH + 12), Ink(theme.muted, "small"))
+            lettered(page, text, (EDGE, _HEAD + _PITCH + 12), muted)
         self._bars = {
             (kind, name): self._moving(
                 box(page, _colour(theme, kind), 0.75, SHADE, hatch=_HATCH[kind])
@@ -104,10 +109,10 @@ class ContributionsPicture(Picture[Spread]):
             return "Nothing is uncertain."
         parts = []
         for kind in KINDS:
-            ranked = [(n, s) for n, s in data.contributions[kind].items() if s >= 0.005]
+            ranked = [(n, s) for n, s in _of(data, kind).items() if s >= 0.005]
             text = ", ".join(f"{name} {share:.0%}" for name, share in ranked[:4])
             parts.append(f"{kind} from {text or 'nothing'}")
-        return f"Shares in the variance: {'; '.join(parts)}."
+        return f"Shares in the variance{self._unit and f' {self._unit}'}: {'; '.join(parts)}."
 
 
 #: A pattern beside each colour.
@@ -128,18 +133,32 @@ def _named(theme: Theme, name: str) -> tuple[str, Ink]:
     return symbol(name), ink
 
 
+def _of(data: Spread, kind: str) -> Mapping[str, float]:
+    """Return the shares of a kind as a reader of the measurand sees them."""
+    if data.measurand is None:
+        return data.contributions[kind]
+    return data.measurand.contributions[data.measurand.ends[kind]]
+
+
+def _unit(data: Spread) -> str:
+    """Return what the variance is in, where that is not volts."""
+    unit = "" if data.measurand is None else short_unit(data.measurand.signal)
+    return f"in {unit}" if unit else ""
+
+
 def _rows(data: Spread) -> tuple[str, ...]:
     """Return the quantities in the order of the design, so that no bar changes its place."""
-    names = tuple(data.box.quantities)
+    box = data.box if data.measurand is None else data.measurand.box
+    names = tuple(box.quantities)
     if len(names) <= MOST_ROWS:
         return names
-    largest = {n: max(data.contributions[kind].get(n, 0.0) for kind in KINDS) for n in names}
+    largest = {n: max(_of(data, kind).get(n, 0.0) for kind in KINDS) for n in names}
     kept = sorted(names, key=lambda n: -largest[n])[: MOST_ROWS - 1]
     return (*(name for name in names if name in kept), OTHERS)
 
 
 def _shares(data: Spread, kind: str, names: tuple[str, ...]) -> dict[str, float]:
-    found = data.contributions[kind]
+    found = _of(data, kind)
     shares = {name: found.get(name, 0.0) for name in names if name != OTHERS}
     if OTHERS in names:
         shares[OTHERS] = sum(share for name, share in found.items() if name not in shares)
@@ -170,6 +189,4 @@ def contributions(
     -------
     ContributionsPicture
     """
-    picture = ContributionsPicture(theme, width_px)
-    picture.update(found)
-    return picture
+    return ContributionsPicture.of(found, theme, width_px)

@@ -185,6 +185,4 @@ def loop(data: Loop, *, theme: str | Theme = "light", width_px: int = 900) -> Lo
     -------
     LoopPicture
     """
-    picture = LoopPicture(theme, width_px)
-    picture.update(data)
-    return picture
+    return LoopPicture.of(data, theme, width_px)

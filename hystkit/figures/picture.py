@@ -7,7 +7,7 @@ from abc import ABC, abstractmethod
 from collections.abc import Hashable, Iterator
 from contextlib import contextmanager
 from pathlib import Path
-from typing import Any, ClassVar, Generic, TypeVar
+from typing import Any, ClassVar, Generic, Self, TypeVar
 
 import numpy as np
 from matplotlib.artist import Artist
@@ -15,7 +15,8 @@ from matplotlib.axes import Axes
 from matplotlib.backends.backend_agg import FigureCanvasAgg
 from matplotlib.figure import Figure
 
-from hystkit.base.errors import Fault, InputError, OutputExistsError
+from hystkit.base.errors import Fault, InputError
+from hystkit.base.files import ANOTHER_NAME, check_free, write_bytes
 from hystkit.figures.png import encode
 from hystkit.figures.theme import PX_PER_INCH, Theme, drawing, lettering, theme_of
 
@@ -65,6 +66,28 @@ class Picture(ABC, Generic[T]):
         self._alt = ""
         #: How often the background was drawn; a slider that moves must not raise it.
         self.full_redraws = 0
+
+    @classmethod
+    def of(cls, data: T, theme: str | Theme, width_px: int) -> Self:
+        """Return a picture that shows `data` already.
+
+        Parameters
+        ----------
+        data : object
+            What the picture shows, of the kind that its class names.
+        theme : str or Theme
+            "light", "dark" or "any".
+        width_px : int
+            Width in px of the page.
+
+        Returns
+        -------
+        Picture
+            Of the class that it is asked of.
+        """
+        picture = cls(theme, width_px)
+        picture.update(data)
+        return picture
 
     # -- what a subclass says ---------------------------------------------------------------
 
@@ -216,7 +239,7 @@ class Picture(ABC, Generic[T]):
         Raises
         ------
         InputError
-            If the ending is none of these.
+            If the ending is none of these, or the file cannot be written.
         OutputExistsError
             If the file is there and `overwrite` is not set.
         """
@@ -229,12 +252,9 @@ class Picture(ABC, Generic[T]):
                 have=", ".join(_NO_METADATA),
                 remedy="a file name with one of these endings",
             )
-        if path.exists() and not overwrite:
-            raise OutputExistsError(
-                "the file is already there.", asked=str(path), remedy="overwrite=True"
-            )
-        path.write_bytes(self.png() if ending == ".png" else self._written(ending))
-        return path
+        check_free(path, ANOTHER_NAME, overwrite=overwrite)
+        data = self.png() if ending == ".png" else self._written(ending)
+        return write_bytes(path, data, overwrite=overwrite)
 
     def __repr__(self) -> str:
         """Say what it shows, for readers of the plain text of a notebook."""

@@ -290,9 +290,7 @@ def ruler(levels: Levels, *, theme: str | Theme = "light", width_px: int = 900) 
     -------
     RulerPicture
     """
-    picture = RulerPicture(theme, width_px)
-    picture.update(levels)
-    return picture
+    return RulerPicture.of(levels, theme, width_px)
 
 
 def describe(levels: Levels) -> str:

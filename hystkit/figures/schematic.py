@@ -152,9 +152,7 @@ def schematic(
     SchematicPicture
         The picture; `update` it with another design.
     """
-    picture = SchematicPicture(theme, width_px)
-    picture.update(design)
-    return picture
+    return SchematicPicture.of(design, theme, width_px)
 
 
 def sheets_of(design: Design) -> Iterator[Sheet]:

@@ -64,9 +64,9 @@ def draw_sheet(sheet: Sheet, axes: Axes, *, colour: str, line_width: float) -> N
     for body in sheet.bodies:
         drawing.add(_resistor(elements, body))
     strokes = [line.points for line in sheet.lines]
-    strokes += _comparator(sheet.comparator)
+    strokes += comparator_strokes(sheet.comparator)
     for terminal in sheet.terminals:
-        strokes += _terminal(terminal)
+        strokes += terminal_strokes(terminal)
     drawing.add(_stroked(elements, strokes))
     for terminal in sheet.terminals:
         if terminal.kind.startswith("open"):
@@ -92,7 +92,19 @@ def _stroked(elements: Any, strokes: Iterable[Iterable[Point]]) -> Any:
     return element
 
 
-def _comparator(comparator: Comparator) -> list[tuple[Point, ...]]:
+def comparator_strokes(comparator: Comparator) -> list[tuple[Point, ...]]:
+    """Outline a comparator.
+
+    Parameters
+    ----------
+    comparator : Comparator
+        Where it stands, and whether its output is open.
+
+    Returns
+    -------
+    list of tuple of Point
+        Polylines in drawing units: triangle, signs of the inputs, mark of an open output.
+    """
     x, y = comparator.back
     top, tip, bottom = (x, y + TRIANGLE_HALF), (x + TRIANGLE_LENGTH, y), (x, y - TRIANGLE_HALF)
     left, right = x + _SIGN_AT - _SIGN, x + _SIGN_AT + _SIGN
@@ -116,7 +128,20 @@ def _open_collector(at: Point) -> list[tuple[Point, ...]]:
     return [diamond, ((x - d, y - d), (x + d, y - d))]
 
 
-def _terminal(terminal: Terminal) -> list[tuple[Point, ...]]:
+def terminal_strokes(terminal: Terminal) -> list[tuple[Point, ...]]:
+    """Outline the end of a connection.
+
+    Parameters
+    ----------
+    terminal : Terminal
+        What it is and where.
+
+    Returns
+    -------
+    list of tuple of Point
+        Polylines in drawing units: the bar of a rail, the bars of ground; an open end is a
+        circle and has none.
+    """
     x, y = terminal.at
     if terminal.kind.startswith("rail"):
         return [((x - BAR, y), (x + BAR, y))]

@@ -12,6 +12,7 @@ from matplotlib.axes import Axes
 from matplotlib.lines import Line2D
 from matplotlib.patches import Polygon, Rectangle
 
+from hystkit.analyses.spread.measurand import MeasurandSpread
 from hystkit.analyses.spread.result import Spread
 from hystkit.figures.drafting import GUIDE, SHADE, TRACE, box, line, stretch
 from hystkit.figures.frame import draw_message
@@ -19,7 +20,14 @@ from hystkit.figures.graduation import Scale, outward, step_for
 from hystkit.figures.lettering import width_px
 from hystkit.figures.picture import Picture
 from hystkit.figures.ruler_plan import EDGE, NO_TRIPS, finite, switches
-from hystkit.figures.spread_key import Key, axis_titles, draw_axes, span_text, window_text
+from hystkit.figures.spread_key import (
+    Key,
+    axis_titles,
+    draw_axes,
+    sensed_text,
+    span_text,
+    window_text,
+)
 from hystkit.figures.theme import MARKS, Theme
 from hystkit.figures.trip_tags import TripTags, trips_in_words
 from hystkit.numeric.levels import levels
@@ -58,6 +66,20 @@ class WindowedSpread:
         if self.upper is None and self.lower is None:
             return None
         return self.spread.yield_within(upper=self.upper, lower=self.lower)
+
+    @cached_property
+    def sensed_share(self) -> Yield | None:
+        """The same with the tolerances of the signal; None where it changes nothing."""
+        sensed = self.sensed
+        if self.share is None or sensed is None:
+            return None
+        return sensed.yield_at(upper=self.upper, lower=self.lower)
+
+    @property
+    def sensed(self) -> MeasurandSpread | None:
+        """The spread in the measurand, where its limits are not simply those of the volts."""
+        found = self.spread.measurand
+        return found if found is not None and found.adds else None
 
     def window(self, trip: str) -> Window | None:
         """Return the wanted window of a trip [V].
@@ -116,7 +138,7 @@ class SpreadPicture(Picture[WindowedSpread]):
         self._key_top = self._bottom + _AXIS + (_SECOND_AXIS if signal is not None else 0)
         windows = tuple(data.window(trip) is not None for trip in TRIPS)
         # A window moves within the picture; that there is one changes the rows below.
-        return self._across, titles, signal, self._message, windows
+        return self._across, titles, signal, self._message, windows, data.sensed is not None
 
     def _lay_out(self, data: WindowedSpread) -> None:
         rows = Key.rows(self._width_px, data)
@@ -228,10 +250,13 @@ class SpreadPicture(Picture[WindowedSpread]):
             limits, window = data.limits(trip), data.window(trip)
             if limits is not None:
                 words.append(f"{trip} exactly within {span_text(*limits)}")
+                words += filter(None, [sensed_text(data, trip)])
             if window is not None:
                 words.append(f"wanted {window_text(window)}")
         if data.share is not None:
             words.append(f"yield {100 * data.share.value:.4g} %")
+        if data.sensed_share is not None:
+            words.append(f"with the signal {100 * data.sensed_share.value:.4g} %")
         if not data.spread.switches and self._drawn:
             words.append(data.spread.message)
         return "; ".join(words) + "."

@@ -125,8 +125,9 @@ class Key:
         moving: Callable[[Any], Any],
     ) -> None:
         self._width = width_px
-        self._limits, self._windows = {}, {}
+        self._limits, self._windows, self._sensed = {}, {}, {}
         self._baselines: dict[str, float] = {}
+        self._sensed_baselines: dict[str, float] = {}
         y = top + 13
         for trip in _TRIPS:
             colour = getattr(theme, trip)
@@ -140,15 +141,21 @@ class Key:
                 self._windows[trip] = Tag(page, [[Ink(theme.text, "small")]], moving, "window")
                 y += 0 if self._one_line else self.pitch
             y += self.pitch
+            if data.sensed is not None:
+                self._sensed[trip] = Tag(page, [[Ink(theme.signal, "small")]], moving, "sensed")
+                self._sensed_baselines[trip] = y
+                y += self.pitch
         inks = [[Ink(theme.band, "small", bold=True), Ink(theme.text, "small")]]
         self._yield = Tag(page, inks, moving, "yield")
         self._yield_baseline = y
+        self._sensed_yield = Tag(page, inks, moving, "yield with signal")
 
     @staticmethod
     def rows(width_px: int, data: WindowedSpread) -> int:
         """Return how many lines there are."""
         windows = sum(data.window(trip) is not None for trip in _TRIPS)
-        return 2 + bool(windows) + (0 if width_px >= _ONE_LINE else windows)
+        sensed = 0 if data.sensed is None else len(_TRIPS) + bool(windows)
+        return 2 + sensed + bool(windows) + (0 if width_px >= _ONE_LINE else windows)
 
     @property
     def _one_line(self) -> bool:
@@ -172,13 +179,27 @@ class Key:
                 room = self._width - EDGE - at[0]
                 self._windows[trip].write([one_line(text, room, "small")])
                 self._windows[trip].put(*at)
-        if data.share is None:
-            self._yield.hide()
+            if trip in self._sensed:
+                text = one_line(sensed_text(data, trip), self._width - EDGE - left, "small")
+                self._sensed[trip].write([text])
+                self._sensed[trip].put(left, self._sensed_baselines[trip])
+        y = self._yield_baseline
+        below = y + self.pitch
+        self._move_yield(self._yield, "yield", data.share, y, is_first=True)
+        self._move_yield(self._sensed_yield, "with the signal", data.sensed_share, below)
+
+    def _move_yield(
+        self, tag: Tag, name: str, share: Yield | None, baseline: float, is_first: bool = False
+    ) -> None:
+        if share is None:
+            tag.hide()
             return
-        name = f"yield {_percent(data.share.value)}"
+        name = f"{name} {_percent(share.value)}"
+        confidence = f", {100 * share.confidence:g} % confidence" if is_first else ""
+        text = f"({_percent(share.low)} to {_percent(share.high)}{confidence})"
         room = self._width - 2 * EDGE - length_of(name, "small", bold=True) - Tag.space
-        self._yield.write([name, one_line(_between(data.share), room, "small")])
-        self._yield.put(EDGE, self._yield_baseline)
+        tag.write([name, one_line(text, room, "small")])
+        tag.put(EDGE, baseline)
 
 
 def span_text(low: float, high: float, unit: str = "V") -> str:
@@ -187,6 +208,18 @@ def span_text(low: float, high: float, unit: str = "V") -> str:
     digits = trip_digits(max(abs(low), abs(high)), high - low)
     ends = (f"{end / factor:.{digits}g}".replace("-", MINUS) for end in (low, high))
     return f"{' to '.join(ends)} {prefixed}"
+
+
+def sensed_text(data: WindowedSpread, trip: str) -> str:
+    """Return the limits of a trip in the measurand, where the signal has a part in them."""
+    if data.sensed is None or data.limits(trip) is None:
+        return ""
+    low, high = data.sensed.extremes[data.sensed.ends[trip]]
+    if math.isnan(low):
+        return "no reading at some limits of the signal"
+    digits = trip_digits(max(abs(low), abs(high)), high - low)
+    ends = (f"{end:.{digits}g}".replace("-", MINUS) for end in (low, high))
+    return f"{' to '.join(ends)} {short_unit(data.sensed.signal)}".rstrip() + " with the signal"
 
 
 def window_text(window: Window) -> str:
@@ -207,11 +240,6 @@ def _verdict(data: WindowedSpread, trip: str) -> str:
     low, high = window
     held = (low is None or low <= limits[0]) and (high is None or limits[1] <= high)
     return ": ✓ always held" if held else ": ! not always held"
-
-
-def _between(share: Yield) -> str:
-    ends = f"{_percent(share.low)} to {_percent(share.high)}"
-    return f"({ends}, {100 * share.confidence:g} % confidence)"
 
 
 def _percent(share: float) -> str:

@@ -195,6 +195,4 @@ def timeline(
     -------
     TimelinePicture
     """
-    picture = TimelinePicture(theme, width_px)
-    picture.update(response)
-    return picture
+    return TimelinePicture.of(response, theme, width_px)

@@ -130,4 +130,5 @@ def trips_in_words(levels: Levels) -> str:
         if span is not None:
             text += f" within {written_span(*span)}"
         parts.append(text)
-    return f"{parts[0]}, {parts[1]}, width {written(levels.width, digits=3)}"
+    parts.append(f"width {written(levels.width, digits=3)}")
+    return ", ".join(filter(None, (*parts, levels.not_evaluated)))

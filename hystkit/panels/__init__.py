@@ -1,6 +1,7 @@
 """Live panels for notebooks: controls that propose a design, results that follow it."""
 
 from hystkit.panels.base import Panel
+from hystkit.panels.cycle import CyclePanel
 from hystkit.panels.findings_panel import FindingsPanel
 from hystkit.panels.sizing import SizingPanel
 from hystkit.panels.snapshot import Snapshot
@@ -9,6 +10,7 @@ from hystkit.panels.standard import StagePanel
 from hystkit.panels.trip import TripPanel
 
 __all__ = [
+    "CyclePanel",
     "FindingsPanel",
     "Panel",
     "SizingPanel",

@@ -17,6 +17,9 @@ from hystkit.panels.entries import Note, row_of, text_field
 from hystkit.panels.revise import revised
 from hystkit.panels.standard import StagePanel
 
+#: Columns of a row with a label and a field for a request.
+LABEL_AND_FIELD = "92px 1fr"
+
 
 class AskingPanel(StagePanel):
     """A panel of one design and one request; both change in one step.
@@ -130,7 +133,7 @@ class Asked:
         self.field = text_field(desk, says, "100%", placeholder)
         heading = desk.kit.label(label)
         desk.listen(self.field, changes, self.note.say, keep=True)
-        self.widget = row_of(desk, "86px 1fr", [heading, self.field], self.note)
+        self.widget = row_of(desk, LABEL_AND_FIELD, [heading, self.field], self.note)
 
     def show(self, value: Any) -> None:
         """Show a value.
@@ -161,17 +164,19 @@ class Chosen:
 
     def __init__(self, desk: Desk, name: str, label: str, options: Mapping[str, Any]) -> None:
         self.name = name
+        self._options = dict(options)
         self.note = Note(desk)
+        # Labels only: a choice whose value were None would show as no choice.
         self.field = desk.kit.make(
             widgets.Dropdown,
             "field",
-            options=list(options.items()),
+            options=list(options),
             tooltip=label,
             layout={"width": "100%", "min_width": "0", "margin": "0"},
         )
         heading = desk.kit.label(html.escape(label))
-        desk.listen(self.field, lambda value: {name: value}, self.note.say)
-        self.widget = row_of(desk, "86px 1fr", [heading, self.field], self.note)
+        desk.listen(self.field, lambda chosen: {name: self._options[chosen]}, self.note.say)
+        self.widget = row_of(desk, LABEL_AND_FIELD, [heading, self.field], self.note)
 
     def show(self, value: Any) -> None:
         """Show a value.
@@ -182,7 +187,7 @@ class Chosen:
             One of the options.
         """
         self.note.clear()
-        self.field.value = value
+        self.field.value = next(n for n, option in self._options.items() if option == value)
 
 
 class RequestSection:

@@ -117,8 +117,8 @@ class Panel(widgets.VBox):
         **changes : object
             Parts and levels by name ("R_F", "V_REF", ...; a bare value keeps the tolerance, None
             takes an optional part out), "V_CC", "V_EE", "supply_tol", fields of `Device`
-            ("device_name" for its name), "sense", "supply", "reference", "output", "name",
-            "signal".
+            ("device_name" for its name), "device_class" (a name in `hystkit.device_classes`),
+            "sense", "supply", "reference", "output", "name", "signal".
 
         Raises
         ------

@@ -122,13 +122,13 @@ class Amount:
         Key of the change that it proposes.
     label : str
         What stands before it, HTML.
-    unit : str
-        Unit of the number; none for plain text.
+    unit : str or None
+        Unit of the number, empty where it has none; None for plain text.
     says : str
         Accessible name.
     """
 
-    def __init__(self, desk: Desk, name: str, label: str, unit: str, says: str) -> None:
+    def __init__(self, desk: Desk, name: str, label: str, unit: str | None, says: str) -> None:
         self.name = name
         self._unit = unit
         self._text = label
@@ -137,8 +137,8 @@ class Amount:
         self.field = text_field(desk, says, "100%")
         self._label = desk.kit.label(label)
         desk.listen(self.field, self._read, self._say, keep=True)
-        width = VALUE_WIDTH if unit else "150px"
-        self.widget = row_of(desk, f"1fr {width}", [self._label, self.field], self.note)
+        columns = f"{NAME_WIDTH} 1fr" if unit is None else f"1fr {VALUE_WIDTH}"
+        self.widget = row_of(desk, columns, [self._label, self.field], self.note)
 
     def show(self, value: float | str | None, default: str = "") -> None:
         """Show a value.
@@ -168,7 +168,9 @@ class Amount:
     def _read(self, text: str) -> Changes:
         if not text.strip():
             return {self.name: None}
-        return {self.name: read(text, unit=self._unit, name=self._says) if self._unit else text}
+        if self._unit is None:
+            return {self.name: text}
+        return {self.name: read(text, unit=self._unit, name=self._says)}
 
     def _say(self, text: str) -> None:
         # A refusal names the field of the device; here it stands under its label.
@@ -263,7 +265,7 @@ def read_tolerance(text: str) -> float:
     return parse_percent(text, bare=True) if text.strip() else 0.0
 
 
-def _written(value: float | str | None, unit: str) -> str:
+def _written(value: float | str | None, unit: str | None) -> str:
     if value is None or isinstance(value, str):
         return value or ""
-    return amount(value, unit)
+    return amount(value, unit or "")

@@ -120,6 +120,18 @@ CSS = """
   color: var(--hk-care); font-weight: 600;
 }
 .hystkit-panel .hystkit-wrapped tr > td { color: var(--hk-text); }
+.hystkit-panel .hystkit-wrapped { container-type: inline-size; }
+@container (max-width: 460px) {
+  .hystkit-panel .hystkit-wrapped :is(table, tbody, tr, th, td) { display: block; }
+  .hystkit-panel .hystkit-wrapped thead { display: none; }
+  .hystkit-panel .hystkit-wrapped tr { border-bottom: 1px solid var(--hk-line); padding: 3px 0; }
+  .hystkit-panel .hystkit-wrapped tr > :is(th, td, td:nth-child(3)) {
+    border: 0; padding: 0; text-align: left; white-space: normal;
+  }
+  .hystkit-panel .hystkit-wrapped td:empty { display: none; }
+  .hystkit-panel .hystkit-wrapped td:nth-child(3)::before { content: "margin: "; }
+  .hystkit-panel .hystkit-wrapped td:nth-child(4)::before { content: "to change: "; }
+}
 .hystkit-panel .hystkit-candidate { padding: 3px 0; overflow: visible; }
 .hystkit-panel .hystkit-candidate + .hystkit-candidate { border-top: 1px solid var(--hk-line); }
 .hystkit-panel .hystkit-error:has(.widget-html-content:empty) { display: none; }
@@ -130,8 +142,9 @@ CSS = """
 """
 
 # Sliders and pictures have no trait for an accessible name, and a kernel does not know how much
-# room there is. So the page names handles and fields after their labels, gives each picture its
-# words as alternative text, and reports the width of the results.
+# room there is. So the page names handles and fields after their labels, keeps their arrow keys
+# from moving through the cells of a notebook, gives each picture its words as alternative text,
+# and reports the width of the results.
 _SCRIPT = """
 var mark=this,tries=50;
 function start(){
@@ -150,6 +163,8 @@ function start(){
    if(label&&label.title)handle.setAttribute('aria-label',label.title)});
   panel.querySelectorAll('input[title],select[title]').forEach(function(field){
    field.setAttribute('aria-label',field.title)});
+  panel.querySelectorAll('select,.noUi-handle').forEach(function(field){
+   field.setAttribute('data-lm-suppress-shortcuts','true')});
   panel.querySelectorAll('.hystkit-fold').forEach(function(fold){
    fold.setAttribute('aria-expanded',fold.classList.contains('mod-active'))});
   panel.querySelectorAll('img.hystkit-picture').forEach(function(picture){

@@ -8,6 +8,7 @@ from typing import Any, TypeVar
 
 from hystkit.base.errors import DesignError, Fault, HystkitError, UnknownNameError
 from hystkit.base.nearest import unknown_name_fault
+from hystkit.circuit.classes import device_classes, device_of_class
 from hystkit.circuit.design import Design, PartLike
 from hystkit.circuit.device import Device
 from hystkit.circuit.forms import CHOICES
@@ -26,7 +27,7 @@ FIRST_VALUES: Mapping[str, float] = {
 _RAILS = ("V_CC", "V_EE", "supply_tol")
 _LEVELS = ("V_REF", "V_PU", "V_L", "V_OH", "V_OL")
 _DEVICE = tuple(f.name for f in fields(Device) if f.name != "name")
-_OTHER = ("device_name", "name", "signal")
+_OTHER = ("device_class", "device_name", "name", "signal")
 
 
 @dataclass
@@ -71,8 +72,10 @@ def revised(design: Design, changes: Mapping[str, Any], spare: Spare | None = No
     changes : mapping
         Parts and levels by name (a bare value keeps the tolerance; None takes an optional part
         out and returns a level to its default), "V_CC", "V_EE", "supply_tol", the fields of
-        `Device` ("device_name" for its name; None for the default), the choices "sense", "supply",
-        "reference" and "output" of a built-in form, "name" and "signal".
+        `Device` ("device_name" for its name; None for the default), "device_class" (every value
+        of a class in `hystkit.device_classes`, under those that are given beside it; None for
+        values that are of no class any more), the choices "sense", "supply", "reference" and
+        "output" of a built-in form, "name" and "signal".
     spare : Spare, optional
         Where a part that a new form needs may come from.
 
@@ -95,7 +98,7 @@ def revised(design: Design, changes: Mapping[str, Any], spare: Spare | None = No
     parts = _parts(design, changes, form, spare)
     stage = form.with_options(*(name for name in form.optional if name in parts))
     faults: list[Fault] = []
-    device = _built(faults, lambda: _device(design.device, changes))
+    device = _built(faults, lambda: _device(design.device, changes, stage.output))
     supply = _built(faults, lambda: _supply(design.supply, changes, stage, spare))
     # Where a supply or device cannot be built, the old one stands in, to find other faults too.
     rails = supply or (design.supply if design.stage.supply == stage.supply else None)
@@ -187,13 +190,17 @@ def _put(
             return  # left as it is, for the design to name it together with its other faults
 
 
-def _device(device: Device, changes: Mapping[str, Any]) -> Device:
+def _device(device: Device, changes: Mapping[str, Any], output: str) -> Device:
+    if changes.get("device_class") is not None:
+        device = device_of_class(changes["device_class"], output)
+    elif "device_class" in changes and device.name in device_classes:
+        device = replace(device, name="")
     given: dict[str, Any] = {name: changes[name] for name in _DEVICE if name in changes}
     if "device_name" in changes:
         given["name"] = changes["device_name"]
     defaults = {f.name: f.default for f in fields(Device)}
     given = {name: defaults[name] if value is None else value for name, value in given.items()}
-    return replace(device, **given) if given else device
+    return device.with_values(**given) if given else device
 
 
 def _supply(supply: Supply, changes: Mapping[str, Any], stage: Stage, spare: Spare) -> Supply:

@@ -10,10 +10,13 @@ import ipywidgets as widgets
 
 from hystkit.analyses.sizing.candidate import Candidate, Sizing
 from hystkit.analyses.sizing.limits import Limits
+from hystkit.analyses.sizing.requirement import SOURCE, is_source
 from hystkit.analyses.sizing.size import size
 from hystkit.base.errors import HystkitError
 from hystkit.base.quantity import show
 from hystkit.circuit.design import Design
+from hystkit.circuit.parts import Part
+from hystkit.circuit.stage import Stage
 from hystkit.panels.asking import AskingPanel
 from hystkit.panels.base import Section
 from hystkit.panels.desk import Desk, why
@@ -24,7 +27,9 @@ from hystkit.panels.sizing_request import SizingRequest, SizingSection
 
 #: Candidates that a panel lists.
 LISTED = 8
-_COLUMNS = "18px minmax(0, 5fr) minmax(0, 4fr) minmax(0, 6fr) 76px"
+# Parts, trips and verdict of a candidate stand in columns, or below each other on a narrow page.
+_FLEX = ("5 1 170px", "3 1 120px", "8 1 200px")
+_COLUMNS = "18px minmax(0, 1fr) 92px"
 
 
 class SizingPanel(LoopFigure, AskingPanel):
@@ -70,17 +75,18 @@ class SizingPanel(LoopFigure, AskingPanel):
         """Search for parts that give what is wanted; a refusal stands in the card."""
         design, request = self.design, self.request
         free = request.free_in(design)
+        fixed = self._fixed(free)
         asked = {n: getattr(request, n) for n in ("upper", "lower", "on_at", "off_at")}
         refusal = ""
         self.found = None
         try:
             self.found = size(
-                None if request.all_forms else design.stage,
+                None if request.all_forms else _holding(design.stage, (*fixed, *free)),
                 supply=design.supply,
                 **asked,
                 load=request.load,
                 free=None if request.all_forms else free,
-                parts={n: p for n, p in design.parts.items() if n not in free},
+                parts=fixed,
                 series=request.series,
                 tol=request.tol,
                 tempco=request.tempco,
@@ -112,6 +118,19 @@ class SizingPanel(LoopFigure, AskingPanel):
         chosen = self.candidates.offered[number].design
         self.design = revised(chosen, {"name": self.design.name})
 
+    def _fixed(self, free: tuple[str, ...]) -> dict[str, Part]:
+        """Give the parts that a search leaves as they are.
+
+        The resistance of the signal's source, adopted with a candidate, is no part: it is worked
+        out anew for the quantities that are asked for.
+        """
+        design = self.design
+        fixed = {n: part for n, part in design.parts.items() if n not in free}
+        optional = SOURCE in design.stage.optional
+        if self.request.in_measurand and optional and is_source(fixed.get(SOURCE), design.signal):
+            del fixed[SOURCE]
+        return fixed
+
     def _first_request(self) -> SizingRequest:
         return SizingRequest()
 
@@ -133,6 +152,11 @@ class SizingPanel(LoopFigure, AskingPanel):
 
     def _remarks(self) -> tuple[str, ...]:
         return (*super()._remarks(), *self.candidates.lines)
+
+
+def _holding(stage: Stage, parts: Sequence[str]) -> Stage:
+    """Give a stage without the optional parts that are not among these."""
+    return stage.with_options(*(name for name in stage.including if name in parts))
 
 
 class CandidateList:
@@ -221,7 +245,10 @@ class _Row:
 
     def __init__(self, desk: Desk, number: int, adopt: Any) -> None:
         kit = desk.kit
-        self._texts = [kit.label(f"{number + 1}"), *(kit.label("") for _ in range(3))]
+        self._texts = [
+            kit.make(widgets.HTML, "label", layout={"flex": flex, "min_width": "0", "margin": "0"})
+            for flex in _FLEX
+        ]
         self.button = kit.make(
             widgets.Button,
             "chip",
@@ -235,10 +262,15 @@ class _Row:
                 adopt(number)
 
         self.button.on_click(clicked)
+        texts = kit.make(
+            widgets.Box,
+            children=self._texts,
+            layout={"flex_flow": "row wrap", "grid_gap": "0 12px", "margin": "0"},
+        )
         self.widget = kit.make(
             widgets.GridBox,
             "candidate",
-            children=[*self._texts, self.button],
+            children=[kit.label(f"{number + 1}"), texts, self.button],
             layout={
                 "grid_template_columns": _COLUMNS,
                 "grid_gap": "0 12px",
@@ -258,15 +290,7 @@ class _Row:
             html.escape(one.values) + form,
             trips,
             f'<span class="hystkit-{severity}-line"><b aria-hidden="true">{sign}</b></span> '
-            f"{said}{html.escape(one.verdict)}{_yield(one)}",
+            f"{said}{html.escape(one.outcome)}",
         )
-        for label, text in zip(self._texts[1:], texts, strict=True):
+        for label, text in zip(self._texts, texts, strict=True):
             label.value = text
-
-
-def _yield(one: Candidate) -> str:
-    if one.expected_yield is None:
-        return ""
-    share = one.expected_yield.value
-    text = f"{100 * share:.4g}"
-    return f"; yield {text if share == 1 or text != '100' else '> 99.99'} %"

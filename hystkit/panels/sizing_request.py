@@ -93,6 +93,11 @@ class SizingRequest:
         return tuple(n for n in design.parts if n not in _USUALLY_FIXED)[:_MOST_FREE]
 
     @property
+    def in_measurand(self) -> bool:
+        """Whether switching points of the load are asked for, and no trips in volts."""
+        return any(getattr(self, name) is not None for name in _IN_MEASURAND)
+
+    @property
     def limits(self) -> dict[str, float]:
         """Limits that are set, as `hystkit.size` takes them."""
         found = {

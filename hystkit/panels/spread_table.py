@@ -28,8 +28,8 @@ def spread_rows(shown: WindowedSpread, trips: TripPoints) -> Rows:
     Returns
     -------
     list of tuple of str
-        A column for the measurand stands only with a signal, a row for the yield only with a
-        window.
+        A column for the measurand, the signal's tolerances included, stands only with a signal;
+        a row for the yield only with a window.
     """
     spread, signal = shown.spread, trips.signal
     sigmas = f"± {spread.plan.sigmas:g} sigma"
@@ -42,9 +42,11 @@ def spread_rows(shown: WindowedSpread, trips: TripPoints) -> Rows:
         row += [_interval(spread.extremes[kind], "V"), show(spread.rss[kind], "V", 3)]
         row += [measured.get(kind, "")] if signal is not None else []
         rows.append(tuple(row))
-    share = shown.share
-    if share is not None:
-        row = ["yield", _percent(share.value), f"{_percent(share.low)} to {_percent(share.high)}"]
+    shares = {"yield": shown.share, "yield with signal": shown.sensed_share}
+    for name, share in shares.items():
+        if share is None:
+            continue
+        row = [name, _percent(share.value), f"{_percent(share.low)} to {_percent(share.high)}"]
         row += [f"at {100 * share.confidence:g} %"] + [""] * (signal is not None)
         rows.append(tuple(row))
     return rows
@@ -55,9 +57,7 @@ def _column(signal: Signal) -> str:
 
 
 def _measured(found: MeasurandSpread) -> dict[str, str]:
-    other = "upper" if found.low_is == "lower" else "lower"
-    kinds = {"low": found.low_is, "high": other, "width": "width"}
-    return {kinds[end]: _interval(pair, "") for end, pair in found.extremes.items()}
+    return {kind: _interval(found.extremes[end], "") for kind, end in found.ends.items()}
 
 
 def _interval(ends: Interval, unit: str) -> str:

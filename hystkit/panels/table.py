@@ -3,12 +3,12 @@
 from __future__ import annotations
 
 import html
-from collections.abc import Iterator
 
-from hystkit.base.quantity import show
+from hystkit.base.quantity import show_span
 from hystkit.circuit.signals import Signal
+from hystkit.circuit.trip_texts import TripTexts
 from hystkit.numeric.trips import TripPoints
-from hystkit.numeric.views import Interval, Levels
+from hystkit.numeric.views import Levels
 
 Rows = list[tuple[str, ...]]
 
@@ -30,19 +30,21 @@ def trip_rows(levels: Levels, trips: TripPoints) -> Rows:
         signal.
     """
     intervals = {"upper": levels.upper_interval, "lower": levels.lower_interval}
-    toleranced = any(intervals.values())
+    toleranced = any(intervals.values()) or bool(levels.not_evaluated)
     signal = trips.signal
     heading = ["", "nominal"]
     heading += ["over tolerances"] if toleranced else []
     heading += [_column(signal)] if signal is not None else []
     rows: Rows = [tuple(heading)]
-    measured = dict(_measured(trips))
+    texts = TripTexts(float(trips.upper), float(trips.lower), signal)
     for name in ("upper", "lower", "width", "middle"):
-        row = [name, show(float(getattr(trips, name)), "V")]
+        row = [name, texts.shown(name)]
         if toleranced:
-            row.append(_interval(intervals.get(name)))
+            found = intervals.get(name)
+            missing = levels.not_evaluated if name in intervals else ""
+            row.append(show_span(*found, "V") if found else missing)
         if signal is not None:
-            row.append(measured[name])
+            row.append(texts.number(name))
         rows.append(tuple(row))
     return rows
 
@@ -92,18 +94,3 @@ def as_text(rows: Rows) -> str:
 
 def _column(signal: Signal) -> str:
     return f"{signal.name} / {signal.unit}" if signal.unit else signal.name
-
-
-def _interval(found: Interval | None) -> str:
-    if found is None:
-        return ""
-    return f"{show(found[0], 'V')} to {show(found[1], 'V')}"
-
-
-def _measured(trips: TripPoints) -> Iterator[tuple[str, str]]:
-    signal, measurand = trips.signal, trips.measurand
-    if signal is None or measurand is None:
-        return
-    for name in ("upper", "lower", "middle"):
-        yield name, show(float(signal.quantity(getattr(trips, name))))
-    yield "width", show(float(measurand.width))

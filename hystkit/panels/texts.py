@@ -8,6 +8,7 @@ from collections.abc import Callable
 
 from hystkit.base.errors import QuantityError
 from hystkit.base.quantity import code, parse_percent, read, show
+from hystkit.symbolic.symbols import split_name
 
 _DIGITS = (4, 6, 9, 12, 15, 17)
 
@@ -92,10 +93,10 @@ def subscripted(name: str) -> str:
 
     Examples
     --------
-    >>> subscripted("R_PU")
-    'R<span class="hystkit-sub">PU</span>'
+    >>> subscripted("R_PU"), subscripted("R12")
+    ('R<span class="hystkit-sub">PU</span>', 'R<span class="hystkit-sub">12</span>')
     """
-    head, _, index = name.partition("_")
+    head, index = split_name(name)
     # A span, for the labels of sliders let no other tag for an index through.
     below = f'<span class="hystkit-sub">{html.escape(index)}</span>' if index else ""
     return html.escape(head) + below

@@ -6,14 +6,14 @@ import os
 import platform
 import sys
 
-from tests.benchmarks import forms, imports, sizing, slider, spread
+from tests.benchmarks import cycle, forms, imports, noise, sizing, slider, spread
 
 
 def main() -> int:
     machine = f"Python {platform.python_version()}, {os.cpu_count()} cores"
     print(f"{machine}; processor times, medians of one run\n")
     missed = 0
-    for benchmark in (imports, forms, slider, spread, sizing):
+    for benchmark in (imports, forms, slider, spread, sizing, cycle, noise):
         for comparison in benchmark.comparisons():
             print(comparison, flush=True)
             missed += not comparison.passed

@@ -60,14 +60,31 @@ def comparisons() -> list[Comparison]:
     return [
         Comparison(subject, moved, "its pictures afresh, by savefig", by_savefig, at_least=4.0),
         Comparison(subject, moved, "its pictures afresh, own PNG writer", by_png),
-        spread_panel(),
+        spread_panel("slider move in SpreadPanel, 20,000 samples", header_tank()),
+        spread_panel("... with the tolerances of a thermistor", vent()),
     ]
 
 
-def spread_panel() -> Comparison:
+def vent() -> hk.Design:
+    """A greenhouse vent, whose thermistor has tolerances and shares the supply."""
+    sensor = hk.signals.Ntc("10k", 3950, r25_tol=0.01, b_tol=0.005)
+    parts = {"R_T": "22k1", "R_B": "21k", "R_F": "220k", "R_PU": "4k7"}
+    return hk.Design(
+        hk.Stage("inverting", output="open-collector"),
+        {name: hk.Part(value, tol="1 %") for name, value in parts.items()},
+        supply=hk.Supply(5.0, tol="5 %"),
+        device=hk.Device(drop_low=0.2, limits={"drop_low": (0.1, 0.4), "offset": (-5e-3, 5e-3)}),
+        signal=hk.signals.SensorDivider(sensor, hk.Part("10k", tol="1 %"), span=(-10, 45)),
+    )
+
+
+def spread_panel(subject: str, start: hk.Design) -> Comparison:
     """A slider move in SpreadPanel, against its samples and shares drawn the plain way."""
-    start = header_tank()
-    panel = hk.panels.SpreadPanel(start, upper=(2.25, 2.32), lower=(1.52, 1.6))
+    trips = hk.trip_points(start)
+    windows = {
+        t: (getattr(trips, t) - 0.035, getattr(trips, t) + 0.035) for t in ("upper", "lower")
+    }
+    panel = hk.panels.SpreadPanel(start, **windows)
     assert panel.request.samples == SAMPLES
     width_px = panel.figure.picture.width_px
 
@@ -83,7 +100,6 @@ def spread_panel() -> Comparison:
     moved, by_hist = alternating(move, plain)
     assert not panel.error, panel.error
     panel.close()
-    subject = "slider move in SpreadPanel, 20,000 samples"
     return Comparison(subject, moved, "samples and shares by hist and barh", by_hist, limit=0.100)
 
 

@@ -72,6 +72,13 @@ def design() -> hk.Design:
     )
 
 
+def with_signal() -> hk.Design:
+    """The cut-out on a thermistor with three tolerances of its own, which shares the supply."""
+    sensor = hk.signals.Ntc("10k", 3950, r25_tol=0.01, b_tol=0.005)
+    other = hk.Part("10k", tol="1 %", tempco=50e-6)
+    return design().with_signal(hk.signals.SensorDivider(sensor, other, span=(-20, 90)))
+
+
 def comparisons() -> list[Comparison | Memory]:
     cut_out = design()
     assert len(hk.spread(cut_out).box.quantities) == 12
@@ -83,9 +90,18 @@ def comparisons() -> list[Comparison | Memory]:
         lambda turn: solve(cut_out, Plan(SAMPLES, turn, "normal", 3.0)),
         rounds=3,
     )
+    sensed = with_signal()
+    assert len(hk.spread(sensed).measurand.box.quantities) == 15
+    read, sweep = alternating(
+        lambda turn: hk.spread(sensed).measurand.extremes,
+        lambda turn: hk.spread(sensed, samples=100_000, seed=turn).measurand.samples,
+        rounds=5,
+    )
     return [
         Comparison("exact extremes of 12 quantities, all four", exact,
                    "all 4096 corners", corners, limit=0.050),
+        Comparison("extremes in the measurand, 15 quantities", read,
+                   "100,000 samples, which find less", sweep, limit=0.100),
         Comparison("1,000,000 samples of 12 quantities", sampled,
                    "batched numpy.linalg.solve, same points", solved, at_least=5.0),
         Memory("... its process at the peak", in_fresh_process(MEMORY, repeat=1), PEAK),

@@ -13,6 +13,7 @@ from hystkit.export.page.document import Page as Draft
 from hystkit.export.page.loop import draw_loop
 from hystkit.export.page.ruler import draw_ruler
 from hystkit.export.page.writer import standalone
+from hystkit.numeric.extremes import not_evaluated
 from tests.browser.pages import (
     PLAIN,
     Watched,
@@ -26,6 +27,7 @@ from tests.browser.pages import (
     until,
     watched,
 )
+from tests.circuit.custom import uncertain_chain
 from tests.export.designs import every_design, full, ladder, stuck
 
 if TYPE_CHECKING:
@@ -90,13 +92,15 @@ def test_texts_stay_when_the_script_takes_over(chromium: Browser) -> None:
     for scripts in (False, True):
         with watched(chromium, java_script_enabled=scripts) as seen:
             shown.append({})
-            for name, design in {**designs, "stuck": stuck(), "tank": header_tank()}.items():
+            designs |= {"stuck": stuck(), "tank": header_tank(), "chain": uncertain_chain(17)}
+            for name, design in designs.items():
                 seen.page.goto("about:blank")  # else the policy of the page before holds
                 seen.page.set_content(standalone(Draft(design)))
                 shown[-1][name] = _texts(seen.page)
             seen.all_quiet()
     assert shown[0] == shown[1]
     assert len(shown[0]["tank"]) > 20
+    assert not_evaluated(designs["chain"]) in shown[1]["chain"]
 
 
 def _texts(page: Page) -> list[str]:

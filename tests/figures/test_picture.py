@@ -248,10 +248,16 @@ def test_files_are_written_and_not_replaced(tmp_path: Path, ending: str, head: b
     assert picture.save(path) == path
     first = path.read_bytes()
     assert first.startswith(head)
-    with pytest.raises(OutputExistsError, match="already there"):
+    with pytest.raises(OutputExistsError, match="exists already"):
         picture.save(path)
     picture.save(str(path), overwrite=True)
     assert path.read_bytes() == first
+
+
+def test_a_picture_that_cannot_be_written_is_told(tmp_path: Path) -> None:
+    with pytest.raises(InputError, match="cannot be written"):
+        ruler(vent()).save(tmp_path / "missing" / "ruler.png")
+    assert list(tmp_path.iterdir()) == []
 
 
 def test_saving_leaves_the_picture_as_it_was(tmp_path: Path) -> None:

@@ -216,6 +216,11 @@ def test_alt_tells_all_numbers() -> None:
     )
 
 
+def test_alt_tells_that_tolerances_are_not_evaluated() -> None:
+    found = replace(vent(), upper_interval=None, lower_interval=None, not_evaluated="none known")
+    assert "upper trip 2.553 V (24.05 °C), width 221 mV, none known; " in ruler(found).alt
+
+
 def test_ticks_are_outside_the_band() -> None:
     """The shade ends on the axis, and the ticks of the axis run down from it."""
     picture = ruler(levels(1.0, 4.0))

@@ -37,12 +37,20 @@ def vent() -> hk.Design:
     )
 
 
+def sensed() -> hk.Design:
+    """The same with tolerances of the sensor, whose divider shares a loose supply."""
+    sensor = hk.signals.Ntc("10k", 3950, r25_tol=0.01, b_tol=0.005)
+    signal = hk.signals.SensorDivider(sensor, hk.Part("10k", tol=0.01), span=(-10, 45))
+    return vent().with_signal(signal).with_supply(tol="5 %")
+
+
 @cache
 def found(name: str) -> hk.Spread:
     designs = {
         "tank": header_tank(),
         "cut-out": cut_out(),
         "vent": vent(),
+        "sensed": sensed(),
         "exact": header_tank().with_parts(
             **{n: hk.Part(p.value) for n, p in header_tank().parts.items()}
         ),
@@ -57,7 +65,7 @@ def found(name: str) -> hk.Spread:
     return hk.spread(designs[name], samples=SAMPLES)
 
 
-NAMES = ("tank", "cut-out", "vent", "exact", "wide", "close", "fails")
+NAMES = ("tank", "cut-out", "vent", "sensed", "exact", "wide", "close", "fails")
 
 
 def said(picture: Any) -> set[str]:
@@ -168,6 +176,31 @@ def test_without_a_window_no_yield_is_claimed() -> None:
     assert not any("yield" in text or "window" in text for text in shown)
 
 
+def test_limits_and_yield_with_the_signal_are_written_below_those_in_volts() -> None:
+    one = found("sensed")
+    upper = float(hk.trip_points(one.design).upper)
+    picture = spread(one, upper=(upper - 0.05, upper + 0.05))
+    shown = said(picture)
+    for trip in ("upper", "lower"):
+        low, high = one.measurand.extremes[one.measurand.ends[trip]]
+        assert f"{low:.4g} to {high:.4g} °C with the signal" in shown
+        assert f"{low:.4g} to {high:.4g} °C with the signal" in picture.alt
+    share = one.measurand.yield_at(upper=(upper - 0.05, upper + 0.05))
+    assert f"with the signal {100 * share.value:.4g} %" in shown
+    assert not any("with the signal" in text for text in said(spread(found("tank"))))
+
+
+def test_shares_are_those_in_the_measurand() -> None:
+    one = found("sensed")
+    picture = contributions(one)
+    assert {"R_25", "B", "R_X"} <= set(picture._names)
+    assert "in °C" in said(picture)
+    # The lower trip is the warmer one of a sensor that falls.
+    bars = {name: picture._bars["lower", name].get_width() for name in picture._names}
+    for name, share in one.measurand.contributions["high"].items():
+        assert bars[name] / picture._room == pytest.approx(share, abs=1e-9)
+
+
 def test_a_share_below_one_is_never_written_as_all() -> None:
     many = hk.spread(header_tank(), samples=200_000)
     picture = spread(many, upper=(None, float(np.sort(many.samples["upper"])[-2])))
@@ -237,7 +270,7 @@ def test_many_quantities_are_gathered_in_others() -> None:
 def test_shares_are_told_in_words() -> None:
     alt = contributions(found("tank")).alt
     name, share = next(iter(found("tank").contributions["upper"].items()))
-    assert alt.startswith(f"Shares in the variance: upper from {name} {share:.0%}")
+    assert alt.startswith(f"Shares in the variance in m: upper from {name} {share:.0%}")
     assert contributions(found("exact")).alt == "Nothing is uncertain."
     assert any("nothing is uncertain" in text for text in said(contributions(found("exact"))))
 

@@ -13,6 +13,7 @@ from hystkit.circuit.preferred import nearest
 from hystkit.panels import table
 from hystkit.panels.parts import SERIES, Steps
 from hystkit.panels.texts import amount, ohms, percent
+from tests.circuit.custom import uncertain_chain
 from tests.panels.front import send
 
 
@@ -61,6 +62,14 @@ def test_the_table_has_the_columns_that_apply() -> None:
     plain = table.trip_rows(hk.levels(bare), hk.trip_points(bare))
     assert plain[0] == ("", "nominal")
     assert all(len(row) == 2 for row in plain)
+
+
+def test_the_table_tells_that_tolerances_are_not_evaluated() -> None:
+    design = uncertain_chain(17)
+    rows = table.trip_rows(hk.levels(design), hk.trip_points(design))
+    assert rows[0] == ("", "nominal", "over tolerances")
+    assert all("more than 16 uncertain resistances" in row[2] for row in rows[1:3])
+    assert [row[2] for row in rows[3:]] == ["", ""]
 
 
 def test_pictures_follow_the_room_of_the_page(panel: hk.panels.TripPanel) -> None:

@@ -39,7 +39,8 @@ def click(button: Any) -> None:
 
 
 def shown(panel: hk.panels.SizingPanel) -> str:
-    cells = [cell.value for row in panel.candidates._list.children for cell in row.children[:-1]]
+    rows = [row.children[1] for row in panel.candidates._list.children]
+    cells = [cell.value for row in rows for cell in row.children]
     return " ".join([panel.candidates.said.value, *cells])
 
 
@@ -211,6 +212,42 @@ def test_own_circuits_are_sized_too(make: Make) -> None:
     assert panel.found is not None
     assert panel.found[0].error < 0.1
     assert panel.error == ""
+
+
+def test_an_adopted_source_resistance_is_no_fixed_part(make: Make) -> None:
+    sensor = hk.signals.SensorDivider(hk.signals.Ntc("10k", 3950), "10k", span=(-20, 60))
+    panel = make(header_tank().with_signal(sensor), on_at=(27, 29), off_at=(21, 23))
+    for windows in ({}, {"on_at": (17, 19), "off_at": (12, 14)}, {"all_forms": True}):
+        panel.set(**windows)
+        panel.search()
+        assert panel.found is not None, shown(panel)
+        request = panel.request
+        fresh = hk.size(
+            None if request.all_forms else hk.Stage("inverting"), supply=5.0, signal=sensor,
+            on_at=request.on_at, off_at=request.off_at, count=LISTED,
+            device=header_tank().device,
+        )  # fmt: skip
+        assert [c.design.parts for c in panel.found] == [c.design.parts for c in fresh]
+        assert all(one.has_source for one in panel.found)
+        assert "R_S" not in shown(panel)
+        panel.adopt(0)
+        # The stage keeps it, for it acts on the trips.
+        assert panel.design.parts["R_S"] == fresh[0].design.parts["R_S"]
+    panel.set(on_at=None, off_at=None, upper=2.8, lower=2.4, all_forms=False)
+    panel.search()
+    assert panel.found is not None
+    assert panel.found[0].design.parts["R_S"] == panel.design.parts["R_S"]
+    assert "R_S" not in shown(panel)
+
+
+def test_a_source_resistance_of_ones_own_stays_a_part(make: Make) -> None:
+    sensor = hk.signals.SensorDivider(hk.signals.Ntc("10k", 3950), "10k", span=(-20, 60))
+    design = header_tank().with_signal(sensor).with_parts(R_S="47k")
+    panel = make(design, on_at=(27, 29), off_at=(21, 23))
+    panel.search()
+    assert panel.found is not None
+    assert panel.found[0].design.parts["R_S"] == hk.Part("47k")
+    assert "R_S 47k" in shown(panel)
 
 
 def test_an_unknown_value_changes_nothing(make: Make) -> None:

@@ -189,3 +189,42 @@ def test_closing_closes_every_widget() -> None:
     type_in(panel.asked.rows["upper"].field, "2 to 3")
     panel.close()
     assert registered() == before
+
+
+def vent() -> hk.Design:
+    """A greenhouse vent on a thermistor that shares the supply, with tolerances of its own."""
+    sensor = hk.signals.Ntc("10k", 3950, r25_tol=0.01, b_tol=0.005)
+    parts = {"R_T": "22k1", "R_B": "21k", "R_F": "220k"}
+    return hk.Design(
+        hk.Stage("inverting"),
+        {name: hk.Part(value, tol=0.01) for name, value in parts.items()},
+        supply=hk.Supply(5.0, tol=0.05),
+        signal=hk.signals.SensorDivider(sensor, hk.Part("10k", tol=0.01), span=(-10, 45)),
+    )
+
+
+def test_the_tolerances_of_the_signal_are_in_limits_shares_and_yield(make: Make) -> None:
+    panel = make(vent(), samples=2000)
+    found = hk.spread(panel.design, samples=2000).measurand
+    shown = rows(panel)
+    for kind, end in found.ends.items():
+        ends = [float(text) for text in shown[kind][4].split(" to ")]
+        assert ends == pytest.approx(found.extremes[end], rel=1e-3)
+    assert panel.contributions.picture._names == tuple(found.box.quantities)
+    assert {"R_25", "B", "R_X"} <= set(panel.contributions.picture._names)
+    assert "in °C" in panel.contributions.words.value
+    nominal = float(panel.result.upper)
+    panel.set(upper=(nominal - 0.05, nominal + 0.05))
+    # The supply moves the trips, and the sensor with them: in the measurand it cancels.
+    stage, all_of_it = rows(panel)["yield"], rows(panel)["yield with signal"]
+    share = found.yield_at(upper=panel.request.upper)
+    assert all_of_it[1] == f"{100 * share.value:.4g} %"
+    assert float(stage[1].split()[0]) < 0.9 * float(all_of_it[1].split()[0])
+    assert "with the signal" in panel.figure.words.value
+
+
+def test_a_signal_without_tolerances_adds_no_rows(panel: hk.panels.SpreadPanel) -> None:
+    panel.set(upper=(2.2, 2.4))
+    assert "yield" in rows(panel)
+    assert "yield with signal" not in rows(panel)
+    assert "with the signal" not in panel.figure.words.value
