@@ -15,8 +15,6 @@ from hystkit.analyses.cycle.follow import Event
 from hystkit.analyses.cycle.plants import FirstOrder, Plant
 from hystkit.analyses.cycle.result import Cycle
 from hystkit.analyses.cycle.run import Run, Waveform
-from hystkit.analyses.cycle.simulate import simulate
-from hystkit.analyses.cycle.status import CycleStatus
 from hystkit.analyses.cycle.steady import steady_cycle
 from hystkit.base.errors import DesignError, Fault, InputError
 from hystkit.base.fields import Field, Viewed
@@ -27,22 +25,15 @@ from hystkit.numeric.levels import levels
 from hystkit.numeric.measurand import load_edges
 from hystkit.numeric.views import Levels
 from hystkit.review.axis import Axis
+from hystkit.review.cycling_run import Control, Disturbances
 
 Array = NDArray[np.float64]
 
-#: Periods that are shown, and the most that a run from a start of its own takes.
-PERIODS, _MOST_PERIODS = 2.5, 12.0
-#: Cycles until a plant of so many states repeats itself to the eye; more states: the last.
-_SETTLING = (1, 3, 6)
-#: Time constants after which nothing more is to be seen of a plant that sticks.
-_STUCK = 4.0
 #: Points of the waveform between which it is drawn straight, beside its corners.
 _POINTS = 601
-#: Lengths of time that are shown are of these times a power of ten, so that they seldom change.
-_ROUND = (1.0, 1.2, 1.5, 2.0, 2.5, 3.0, 4.0, 5.0, 6.0, 8.0, 10.0)
-#: Distance of the levels of a plant to begin with from the middle of the band, in widths.
-_APART = 4.0
-_TAU = 600.0
+#: A plant to begin with: distance of its levels from the middle of the band in widths, and its
+#: time constant [s].
+_APART, _TAU = 4.0, 600.0
 
 
 class Phase(NamedTuple):
@@ -216,7 +207,7 @@ def cycling(
     min_off: Quantity = 0.0,
     start: Quantity | None = None,
     until: Quantity | None = None,
-    disturbances: Sequence[tuple[Any, Any]] = (),
+    disturbances: Disturbances = (),
 ) -> Cycling:
     """Put a plant under the control of a design.
 
@@ -263,7 +254,7 @@ def cycling(
     >>> from hystkit.circuit.demo import header_tank
     >>> found = cycling(header_tank(), Integrating(rate_on=0.002, rate_off=-0.001))
     >>> print(f"{found.cycle.on_time:.0f} s on, {found.cycle.off_time:.0f} s off")
-    305 s on, 610 s off
+    302 s on, 604 s off
     """
     edges = load_edges(design.stage.sense, load)
     names = (str(edges.on_at), str(edges.off_at))
@@ -277,11 +268,12 @@ def cycling(
     except DesignError as error:
         fault = found.message or error.faults[0].have
         return Cycling(found, plant, load, names, None, None, None, (0.0, 1.0), False, fault)
-    trips, holds = axis.edges(axis.width), (times["min_on"], times["min_off"])
-    cycle = steady_cycle(plant, *trips, *holds)
-    given = {"start": start, "until": times["until"], "disturbances": disturbances}
-    run, shown, steady = _run(plant, cycle, trips, holds, given)
-    return Cycling(found, plant, load, names, axis, cycle, run, shown, steady)
+    until = times.pop("until")
+    on_at, off_at = axis.edges(axis.width)
+    cycle = steady_cycle(plant, on_at, off_at, **times)
+    shown = Control(plant, on_at, off_at, **times, cycle=cycle).shown(start, until, disturbances)
+    span = (shown.begin, shown.end)
+    return Cycling(found, plant, load, names, axis, cycle, shown.run, span, shown.steady)
 
 
 def first_plant(design: Design, load: str = "high") -> FirstOrder:
@@ -355,81 +347,3 @@ def _read_time(faults: list[Fault], name: str, value: Quantity) -> float:
         rule = f"finite, {name} {'>=' if zero else '>'} 0"
         faults.append(Fault(f"{name} is out of range.", f"{name} = {time:g}", rule=rule))
     return time
-
-
-def _run(
-    plant: Plant,
-    cycle: Cycle,
-    trips: tuple[float, float],
-    holds: tuple[float, float],
-    given: dict[str, Any],
-) -> tuple[Run | None, tuple[float, float], bool]:
-    """Choose what to show, and run it."""
-    status = CycleStatus(int(cycle.status))
-    times = dict(zip(("min_on", "min_off"), holds, strict=True))
-    if status in (CycleStatus.NOT_FINITE, CycleStatus.CHATTERS):
-        return None, (0.0, 1.0), False
-    if given["start"] is not None:
-        until = given["until"] or _from_start(plant, cycle, trips)
-        run = simulate(
-            plant,
-            *trips,
-            start=given["start"],
-            until=until,
-            disturbances=given["disturbances"],
-            **times,
-        )
-        return run, (0.0, until), False
-    if status is not CycleStatus.CYCLES:
-        return _stuck(plant, status, trips, times)
-    period = float(cycle.period)
-    length = _rounded_up(PERIODS * period)
-    order = plant.dynamics.order
-    settling = _SETTLING[min(order, len(_SETTLING)) - 1]
-    begins: dict[str, Any] = {"start": trips[0]} if order <= 2 else {"state": _rest(plant, False)}
-    run = simulate(plant, *trips, until=(settling + 1.1) * period + length, **begins, **times)
-    begin = float(run.starts[min(settling, run.starts.size - 1)])
-    return run, (begin, begin + length), True
-
-
-def _stuck(
-    plant: Plant, status: CycleStatus, trips: tuple[float, float], times: dict[str, float]
-) -> tuple[Run | None, tuple[float, float], bool]:
-    """Run from the trip that is passed last to where the plant sticks."""
-    off = status is CycleStatus.STAYS_OFF
-    until = _rounded_up(_STUCK * _slowest(plant, trips))
-    begins: dict[str, Any] = {"start": trips[1] if off else trips[0], "start_on": off}
-    if plant.dynamics.order > 2 or status is CycleStatus.UNPROVED:
-        begins = {"state": _rest(plant, off), "start_on": off}
-    run = simulate(plant, *trips, until=until, **begins, **times)
-    return run, (0.0, until), False
-
-
-def _from_start(plant: Plant, cycle: Cycle, trips: tuple[float, float]) -> float:
-    if not cycle.ok:
-        return _rounded_up(_STUCK * _slowest(plant, trips))
-    period = float(cycle.period)
-    return _rounded_up(min(2 * _slowest(plant, trips) + 3 * period, _MOST_PERIODS * period))
-
-
-def _slowest(plant: Plant, trips: tuple[float, float]) -> float:
-    """Give the longest time constant, or of a plant without one the time that the band takes."""
-    dynamics = plant.dynamics
-    rates = np.abs(np.linalg.eigvals(dynamics.a).real)
-    dead = float(max(dynamics.dead_on, dynamics.dead_off))
-    if rates.min() > 0:
-        return float(1 / rates.min()) + dead
-    speeds = np.abs([float(dynamics.sensed_of(dynamics.forcing(on))) for on in (True, False)])
-    moving = speeds[speeds > 0]
-    return dead + (abs(trips[1] - trips[0]) / float(moving.min()) if moving.size else _TAU)
-
-
-def _rest(plant: Plant, on: bool) -> Array:
-    """Give the state at rest, or one at zero of a plant that never comes to rest."""
-    found = plant.dynamics.settled(on)
-    return np.where(np.isnan(found), 0.0, found)
-
-
-def _rounded_up(time: float) -> float:
-    power = 10.0 ** math.floor(math.log10(time))
-    return float(next(f for f in _ROUND if f * power >= time * (1 - 1e-9)) * power)

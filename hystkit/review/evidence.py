@@ -12,6 +12,7 @@ import numpy as np
 
 from hystkit.analyses.cycle.result import Cycle
 from hystkit.analyses.cycle.steady import steady_cycle
+from hystkit.analyses.load_step.result import LoadStep
 from hystkit.circuit.design import Design
 from hystkit.circuit.netlist import netlist
 from hystkit.numeric.compile import kernel
@@ -26,7 +27,7 @@ from hystkit.numeric.source import trips_at_source
 from hystkit.numeric.trips import TripPoints, trip_points
 from hystkit.numeric.views import Levels
 from hystkit.review.axis import Axis
-from hystkit.review.service import NOTHING_DECLARED, Service
+from hystkit.review.service import NOTHING_DECLARED, Service, at
 
 STATES = ("high", "low")
 
@@ -87,6 +88,11 @@ class Evidence:
         """Steady cycle of the declared plant between the trips; None without a plant."""
         plant = self.service.plant
         return None if plant is None else steady_cycle(plant, *self.axis.edges(self.axis.width))
+
+    @cached_property
+    def load_step(self) -> LoadStep | None:
+        """The declared load at this design; None without one."""
+        return None if self.service.load_step is None else at(self.service.load_step, self.design)
 
     @property
     def slope(self) -> float:

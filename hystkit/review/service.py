@@ -9,10 +9,12 @@ from typing import Any
 from hystkit.analyses.cycle.plants import Plant
 from hystkit.analyses.drive.result import Drive
 from hystkit.analyses.load_step.result import LoadStep
+from hystkit.analyses.load_step.step import load_step
 from hystkit.analyses.noise.model import Noise
 from hystkit.base.errors import Fault, InputError, UnknownNameError
 from hystkit.base.nearest import unknown_name_fault
 from hystkit.base.quantity import read
+from hystkit.circuit.design import Design
 from hystkit.circuit.reading import Quantity, collect, is_kind, wrong_kind
 
 #: Probability of a further transition per passage that is asked for unless another is given.
@@ -78,7 +80,8 @@ class Service:
     drive : Drive, optional
         What the output drives, as `hk.drive` found it.
     load_step : LoadStep, optional
-        What the load's current does to the stage, as `hk.load_step` found it.
+        What the load's current does to the stage, as `hk.load_step` found it; for another design
+        it is found again.
 
     Raises
     ------
@@ -114,6 +117,24 @@ class Service:
             object.__setattr__(self, field.name, _read(faults, field.name, given[field.name]))
         if faults:
             raise InputError.of("this service", faults)
+
+
+def at(step: LoadStep, design: Design) -> LoadStep:
+    """Give the same load at a design.
+
+    Parameters
+    ----------
+    step : LoadStep
+        Of this design, or of another one.
+    design : Design
+        That switches it.
+
+    Returns
+    -------
+    LoadStep
+        As `load_step` finds it there.
+    """
+    return step if step.design == design or not step.asked else load_step(design, **step.asked)
 
 
 #: A stage of whose service nothing is known.

@@ -134,7 +134,7 @@ def load_step(evidence: Evidence) -> Iterator[Finding]:
     Finding
         What the load's effect leaves of the width; none without a load step.
     """
-    found = evidence.service.load_step
+    found = evidence.load_step
     if found is None:
         return
     margin = float(found.margin)

@@ -473,7 +473,7 @@ def test_the_sensed_value_never_passes_a_trip_unseen(kind: str) -> None:
     assert apart.size > count
     assert apart.max() < 1e-12 * np.abs(off_at).max()
     # Without delay and minimum times the command says which trip comes next.
-    seen = run.sampled(3000)
+    seen = run.sampled(2000)
     sense = np.sign(off_at - on_at)[:, None]
     past = np.where(seen.on, seen.sensed - off_at[:, None], on_at[:, None] - seen.sensed) * sense
     assert past.max() < 1e-11

@@ -166,3 +166,13 @@ def test_every_declaration_that_cannot_be_used_is_named() -> None:
 def test_an_unknown_declaration_is_named() -> None:
     with pytest.raises(hk.UnknownNameError, match="starts_per_hour"):
         hk.review(stage(), start_per_hour=3)
+
+
+def test_a_load_is_found_again_for_another_design() -> None:
+    rail = hk.signals.Linear(1.0, span=(0, 5), unit="V", name="rail")
+    step = hk.load_step(stage(signal=rail), current=4, source_resistance=0.1, load="low", sigmas=0)
+    narrower = stage(signal=rail, parts={"R_R": "10k", "R_F": "190k"})
+    found = only("load step", narrower, load="low", load_step=step)
+    # A width of 0.25 V, of which the same load takes 0.4 V.
+    assert found.severity == "fault"
+    assert found.margin == pytest.approx(0.25 - 0.4)

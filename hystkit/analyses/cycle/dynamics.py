@@ -9,6 +9,7 @@ from typing import Any
 import numpy as np
 from numpy.typing import NDArray
 
+from hystkit.analyses.cycle.norms import mean_power
 from hystkit.base.errors import InputError
 
 Array = NDArray[np.float64]
@@ -326,12 +327,6 @@ def _modal(rates: Any, vectors: Any, inverse: Any, dt: Array) -> tuple[Array, Ar
 
 def _exponential(a: Array, dt: Array) -> tuple[Array, Array]:
     """Take the exponential of a matrix, also of one with too few eigenvectors."""
-    from scipy.linalg import expm
-
-    n = a.shape[-1]
-    lead = np.broadcast_shapes(a.shape[:-2], dt.shape)
-    block = np.zeros((*lead, 2 * n, 2 * n))
-    block[..., :n, :n] = a * dt[..., None, None]
-    block[..., :n, n:] = np.eye(n) * dt[..., None, None]
-    power = expm(block)
-    return power[..., :n, :n], power[..., :n, n:]
+    t = dt[..., None, None]
+    mean = mean_power(a * t)
+    return np.eye(a.shape[-1]) + a * t @ mean, t * mean

@@ -22,6 +22,8 @@ MAX_EVENTS = 10_000
 _RESOLUTION = 4 * np.finfo(float).eps
 # Time constants after which a plant that has not reached its trip never will.
 _FOR_EVER = 60.0
+# Lengths of the run after which an integrator has not reached it either.
+_DRIFTS = 1e6
 
 
 class Event(IntFlag):
@@ -223,10 +225,9 @@ class _State:
         """Tell which elements would never switch again, and which were cut short."""
         waiting = np.isfinite(self._due())
         motion = self.task.motion
-        patience = _FOR_EVER * motion.slowest
-        # Next to an integrator, modes that never fade are given as long again as the run.
-        endless = np.isinf(patience) & ~motion.fades
-        patience = np.where(endless, 2 * self.task.until, patience)
+        # An integrator may take long; next to modes that never fade, twice the run has to do.
+        drifting = np.where(motion.fades, _DRIFTS, 2.0) * self.task.until
+        patience = np.where(np.isinf(motion.slowest), drifting, _FOR_EVER * motion.slowest)
         horizon = np.where(waiting, 0.0, patience)
         stuck = ~waiting & np.isinf(self._reach(horizon))
         code = np.where(self.command, Outcome.STAYS_ON, Outcome.STAYS_OFF)

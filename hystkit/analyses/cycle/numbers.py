@@ -8,8 +8,8 @@ from typing import Any
 import numpy as np
 from numpy.typing import NDArray
 
-from hystkit.base.errors import Fault, QuantityError
-from hystkit.base.quantity import read
+from hystkit.base.errors import Fault
+from hystkit.circuit.arrays import read_array
 from hystkit.circuit.reading import wrong_kind
 
 Array = NDArray[np.float64]
@@ -43,8 +43,12 @@ def read_numbers(
     float or ndarray
         Read-only where it is an array; NaN where nothing could be read.
     """
-    array = _read(faults, name, given, unit)
-    if array is None:
+    known = len(faults)
+    array = read_array(faults, name, given, unit, finite=False)
+    if len(faults) > known:
+        return float("nan")
+    if not array.size:
+        faults.append(wrong_kind(name, given, "a number or an array of numbers", "one at least"))
         return float("nan")
     allowed = np.isfinite(array)
     if rule in _SIGNS:
@@ -62,36 +66,6 @@ def read_numbers(
         )
     array.setflags(write=False)
     return array if array.ndim else float(array)
-
-
-def together(faults: list[Fault], numbers: dict[str, Any]) -> tuple[int, ...]:
-    """Return the shape to which numbers broadcast; one more fault where they do not.
-
-    Parameters
-    ----------
-    faults : list of Fault
-        Where a fault is added.
-    numbers : dict of str to float or ndarray
-        By name.
-
-    Returns
-    -------
-    tuple of int
-        () where they do not fit.
-    """
-    try:
-        return np.broadcast_shapes(*(np.shape(value) for value in numbers.values()))
-    except ValueError:
-        shapes = ", ".join(f"{name} {np.shape(v)}" for name, v in numbers.items() if np.ndim(v))
-        faults.append(
-            Fault(
-                "arrays do not fit together.",
-                have=shapes,
-                rule="shapes broadcast",
-                remedy="arrays of one shape, or single numbers",
-            )
-        )
-        return ()
 
 
 def read_dead_time(faults: list[Fault], given: Any) -> tuple[Numbers, Numbers]:
@@ -121,29 +95,3 @@ def read_dead_time(faults: list[Fault], given: Any) -> tuple[Numbers, Numbers]:
         for one, state in zip(given, ("on", "off"), strict=True)
     )
     return on, off
-
-
-def _read(faults: list[Fault], name: str, given: Any, unit: str) -> Array | None:
-    array = np.asarray(given) if _is_regular(given) else np.asarray(None)
-    if array.dtype.kind in "iuf" and array.size:
-        return array.astype(float)
-    entries = array.ravel() if array.dtype.kind in "UO" and array.size else [given]
-    try:
-        read_entries = [read(_plain(entry), unit=unit, name=name) for entry in entries]
-    except QuantityError as error:
-        faults.extend(error.faults)
-        return None
-    return np.array(read_entries, dtype=float).reshape(array.shape)
-
-
-def _plain(entry: Any) -> Any:
-    return str(entry) if isinstance(entry, np.str_) else entry
-
-
-def _is_regular(given: Any) -> bool:
-    """Whether numpy takes this for an array; rows of unequal length are none."""
-    try:
-        np.asarray(given)
-    except ValueError:
-        return False
-    return True

@@ -12,14 +12,9 @@ import numpy as np
 from numpy.typing import NDArray
 
 from hystkit.analyses.cycle.dynamics import Dynamics
-from hystkit.analyses.cycle.numbers import (
-    Given,
-    Numbers,
-    read_dead_time,
-    read_numbers,
-    together,
-)
+from hystkit.analyses.cycle.numbers import Given, Numbers, read_dead_time, read_numbers
 from hystkit.base.errors import Fault, PlantError
+from hystkit.circuit.arrays import together
 from hystkit.circuit.reading import set_frozen
 
 Array = NDArray[np.float64]

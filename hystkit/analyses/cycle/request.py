@@ -14,9 +14,10 @@ from numpy.typing import NDArray
 from hystkit.analyses.cycle.dynamics import Array, Dynamics
 from hystkit.analyses.cycle.follow import Outcome, Task
 from hystkit.analyses.cycle.motion import Motion, motions
-from hystkit.analyses.cycle.numbers import Given, Numbers, read_numbers, together
+from hystkit.analyses.cycle.numbers import Given, Numbers, read_numbers
 from hystkit.analyses.cycle.plants import Plant
 from hystkit.base.errors import Fault, InputError
+from hystkit.circuit.arrays import together
 from hystkit.circuit.reading import is_kind, members, wrong_kind
 
 _RULES = {"until": "> 0", "min_on": ">= 0", "min_off": ">= 0", "delay": ">= 0", "input_rc": ">= 0"}

@@ -9,7 +9,7 @@ import numpy as np
 from numpy.typing import NDArray
 
 from hystkit.analyses.cycle.lagged import solve_lagged
-from hystkit.analyses.cycle.numbers import Given, Numbers, read_numbers, together
+from hystkit.analyses.cycle.numbers import Given, Numbers, read_numbers
 from hystkit.analyses.cycle.plants import Plant, StateSpace, TwoLag
 from hystkit.analyses.cycle.question import Flags, Orbit, Question, turn
 from hystkit.analyses.cycle.result import Cycle
@@ -18,6 +18,7 @@ from hystkit.analyses.cycle.single import solve_single
 from hystkit.analyses.cycle.status import CycleStatus
 from hystkit.analyses.cycle.turning import extremes, mean, rates
 from hystkit.base.errors import Fault, InputError
+from hystkit.circuit.arrays import together
 from hystkit.circuit.reading import is_kind, wrong_kind
 
 Array = NDArray[np.float64]

@@ -18,6 +18,8 @@ Span = tuple[Array, Array]
 #: beginning.
 _EVEN, _EARLY = 512, 128
 _HALVINGS = 50
+# Points of all plants that are looked at together, so that what they need stays in cache.
+_AT_ONCE = 4096
 
 
 def extremes(kind: type[Plant], question: Question, orbit: Orbit) -> tuple[Span, Span]:
@@ -147,7 +149,8 @@ def _lowest(dynamics: Dynamics, phase: tuple[Array, bool, Array], row: Array) ->
     slope = along(row, lambda state: apply(dynamics.a, state) + dynamics.forcing(on))
     early = np.geomspace(1e-6, 1 / _EVEN, _EARLY, endpoint=False)
     shares = np.concatenate([[0.0], early, np.linspace(1 / _EVEN, 1.0, _EVEN)])
-    seen = np.array([value(share * time) for share in shares])
+    blocks = np.array_split(shares, 1 + shares.size * time.size // _AT_ONCE)
+    seen = np.concatenate([value(block[:, None] * time) for block in blocks])
     least = seen.argmin(axis=0)
     left = shares[np.maximum(least - 1, 0)] * time
     right = shares[np.minimum(least + 1, shares.size - 1)] * time

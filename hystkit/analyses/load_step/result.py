@@ -15,6 +15,7 @@ from hystkit.analyses.load_step.hunting import Hunting, Scene
 from hystkit.analyses.load_step.simulate import simulated
 from hystkit.base.errors import InputError
 from hystkit.base.fields import Field, Viewed
+from hystkit.base.frozen import Named
 from hystkit.base.quantity import show
 from hystkit.circuit.design import Design
 from hystkit.circuit.reading import Quantity
@@ -102,6 +103,8 @@ class LoadStep(Viewed):
         Trip points with the load off, and on.
     noise : float or ndarray
         What is kept free for noise [V].
+    asked : mapping of str to object
+        Arguments of `load_step`, for the same load at another design.
 
     Notes
     -----
@@ -118,6 +121,7 @@ class LoadStep(Viewed):
     without: TripPoints
     during: TripPoints
     noise: Any = 0.0
+    asked: Named[Any] = Named()  # noqa: RUF009 - immutable
 
     @property
     def width(self) -> Any:

@@ -10,10 +10,11 @@ from numpy.typing import ArrayLike
 from hystkit.analyses.load_step.effect import SENSOR_GROUNDS, effect_of
 from hystkit.analyses.load_step.result import LoadStep
 from hystkit.base.errors import Fault, InputError
+from hystkit.base.frozen import Named
 from hystkit.base.nearest import unknown_name_fault
-from hystkit.base.quantity import read
+from hystkit.circuit.arrays import read_array, together
 from hystkit.circuit.design import Design
-from hystkit.circuit.reading import collect, is_kind, wrong_kind
+from hystkit.circuit.reading import is_kind, wrong_kind
 from hystkit.numeric.measurand import LOADS
 from hystkit.numeric.trips import trip_points
 
@@ -125,6 +126,7 @@ def load_step(
         without=trip_points(design),
         during=trip_points(design, **effect.rails),
         noise=known["noise_rms"] * known["sigmas"],
+        asked=Named({**known, "load": load, "sensor_ground": sensor_ground}),
     )
 
 
@@ -138,18 +140,7 @@ def _checked(design: Any, given: dict[str, Any], load: Any, sensor_ground: Any) 
         faults.append(unknown_name_fault("output state", str(load), LOADS))
     if sensor_ground not in SENSOR_GROUNDS:
         faults.append(unknown_name_fault("ground of a sensor", str(sensor_ground), SENSOR_GROUNDS))
-    shapes = {name: np.shape(value) for name, value in known.items() if np.ndim(value)}
-    try:
-        np.broadcast_shapes(*shapes.values())
-    except ValueError:
-        faults.append(
-            Fault(
-                "these arrays do not broadcast.",
-                have=", ".join(f"{name} of shape {shape}" for name, shape in shapes.items()),
-                rule="shapes are equal, or 1, axis by axis from the last",
-                remedy="arrays of one length, or an axis of its own for each: x[:, None]",
-            )
-        )
+    together(faults, known)
     if faults:
         raise InputError.of("this load step", faults)
     return known
@@ -157,14 +148,7 @@ def _checked(design: Any, given: dict[str, Any], load: Any, sensor_ground: Any) 
 
 def _number(faults: list[Fault], name: str, value: Any) -> Any:
     """Read a number, a text or an array of numbers; NaN where that is a fault."""
-    if np.ndim(value) == 0:
-        number: Any = collect(faults, lambda: read(value, unit=_UNITS[name], name=name))
-    elif np.asarray(value).dtype.kind in "iuf":
-        number = np.asarray(value, dtype=float)
-    else:
-        remedy = "a number, a text such as 35m, or an array of numbers"
-        faults.append(wrong_kind(name, value, "an array of numbers", remedy))
-        return np.nan
+    number: Any = read_array(faults, name, value, _UNITS[name])[()]
     # What could not be read is NaN here, and a fault already.
     if name not in _SIGNED and np.any(np.less(number, 0)):
         faults.append(

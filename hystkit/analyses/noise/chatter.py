@@ -10,20 +10,13 @@ from typing import Any
 import numpy as np
 from numpy.typing import NDArray
 
-from hystkit.analyses.noise.asked import (
-    Floats,
-    Values,
-    broadcast,
-    check_noise,
-    plain,
-    read_positive,
-    read_value,
-)
+from hystkit.analyses.noise.asked import broadcast, check_noise, plain
 from hystkit.analyses.noise.model import DEEPEST, LONGEST, Noise
 from hystkit.analyses.noise.ramp import passage
 from hystkit.base.errors import Fault
 from hystkit.base.fields import Field, Viewed
 from hystkit.base.quantity import show
+from hystkit.circuit.arrays import Floats, Values, read_array, read_positives
 
 #: Where the formulas were compared with simulations: width in units of the rms, ...
 WIDTHS = (1.0, 6.0)
@@ -206,8 +199,8 @@ def chatter(width: Values, noise: Noise, slope: Values) -> Chatter:
     """
     faults: list[Fault] = []
     given = {
-        "width": read_positive(faults, "width", width, "V", zero=True),
-        "slope": np.abs(read_value(faults, "slope", slope, "V/s")),
+        "width": read_positives(faults, "width", width, "V", zero=True),
+        "slope": np.abs(read_array(faults, "slope", slope, "V/s")),
     }
     if given["slope"].ndim == 0 and given["slope"] == 0:
         faults.append(

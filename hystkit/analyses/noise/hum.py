@@ -6,8 +6,9 @@ from typing import Any
 
 import numpy as np
 
-from hystkit.analyses.noise.asked import Values, broadcast, plain, read_positive, read_value
+from hystkit.analyses.noise.asked import broadcast, plain
 from hystkit.base.errors import Fault
+from hystkit.circuit.arrays import Values, read_array, read_positives
 
 
 def hum_width(amplitude: Values, frequency: Values, slope: Values) -> Any:
@@ -47,9 +48,9 @@ def hum_width(amplitude: Values, frequency: Values, slope: Values) -> Any:
     """
     faults: list[Fault] = []
     given = {
-        "amplitude": read_positive(faults, "amplitude", amplitude, "V", zero=True),
-        "frequency": read_positive(faults, "frequency", frequency, "Hz", zero=True),
-        "slope": np.abs(read_value(faults, "slope", slope, "V/s")),
+        "amplitude": read_positives(faults, "amplitude", amplitude, "V", zero=True),
+        "frequency": read_positives(faults, "frequency", frequency, "Hz", zero=True),
+        "slope": np.abs(read_array(faults, "slope", slope, "V/s")),
     }
     peak, hertz, ramp = broadcast("this hum", faults, given)
     with np.errstate(divide="ignore", invalid="ignore"):

@@ -7,19 +7,12 @@ from typing import Any
 
 import numpy as np
 
-from hystkit.analyses.noise.asked import (
-    Floats,
-    Values,
-    broadcast,
-    check_noise,
-    plain,
-    read_positive,
-    read_value,
-)
+from hystkit.analyses.noise.asked import broadcast, check_noise, plain
 from hystkit.analyses.noise.chatter import assessed
 from hystkit.analyses.noise.model import Noise
 from hystkit.analyses.noise.rates import standing_cycles
 from hystkit.base.errors import Fault, InfeasibleWidthError, InputError
+from hystkit.circuit.arrays import Floats, Values, read_array, read_positives
 from hystkit.circuit.reading import wrong_kind
 
 # No noise crosses a wider band in the age of anything, in units of the rms.
@@ -104,7 +97,7 @@ def width_for(
             )
         )
         raise InputError.of("this width", faults)
-    steep = np.abs(read_value(faults, "slope", slope, "V/s"))
+    steep = np.abs(read_array(faults, "slope", slope, "V/s"))
     goal, steep = broadcast("this width", faults, {name: wanted, "slope": steep})
     rises = np.where(steep > 0, steep, np.nan)
 
@@ -147,7 +140,7 @@ def distance_for(interval: Values, noise: Noise) -> Any:
     5.95 mV
     """
     faults: list[Fault] = []
-    given = {"interval": read_positive(faults, "interval", interval, "s")}
+    given = {"interval": read_positives(faults, "interval", interval, "s")}
     check_noise(faults, noise)
     (time,) = broadcast("this distance", faults, given)
     crossings = noise.crossing_rate * time
@@ -169,7 +162,7 @@ def _one_of(faults: list[Fault], goals: dict[str, tuple[Values | None, str]]) ->
         return "", np.asarray(np.nan)
     (name,) = given
     value, unit = goals[name]
-    found = read_positive(faults, name, value, unit)
+    found = read_positives(faults, name, value, unit)
     if name == "probability":
         if found.ndim == 0 and found >= 1:
             faults.append(

@@ -11,12 +11,12 @@ from typing import Any
 import numpy as np
 from numpy.typing import ArrayLike, NDArray
 
-from hystkit.analyses.noise.asked import read_positive
 from hystkit.analyses.noise.measured import measured
 from hystkit.analyses.noise.spectrum import Spectrum, Table, TwoPole, autocorrelation, realise
 from hystkit.base.errors import Fault, InputError, NoiseModelError
 from hystkit.base.fields import Field, Viewed
 from hystkit.base.quantity import show
+from hystkit.circuit.arrays import read_positives
 from hystkit.circuit.reading import Quantity, is_kind, wrong_kind
 
 #: Boltzmann constant, exact in the SI since 2019, in J/K.
@@ -390,7 +390,7 @@ def _positive(subject: str, **given: tuple[Any, str]) -> list[float]:
         if not is_kind(value, str) and np.ndim(value) > 0:
             faults.append(wrong_kind(name, value, "a single number", f"one value in {unit}"))
             continue
-        found.append(float(read_positive(faults, name, value, unit)))
+        found.append(float(read_positives(faults, name, value, unit)))
     if faults:
         raise InputError.of(subject, faults)
     return found

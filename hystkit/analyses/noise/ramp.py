@@ -11,8 +11,8 @@ from dataclasses import dataclass
 import numpy as np
 from scipy.special import ndtr
 
-from hystkit.analyses.noise.asked import Floats
 from hystkit.analyses.noise.rates import climb, passage_time, returning
+from hystkit.circuit.arrays import Floats
 
 # The mean runs from this far before the upper trip to as far behind it, in steps.
 _STEPS = 320

@@ -8,17 +8,10 @@ from typing import Any
 import numpy as np
 from scipy.special import log_ndtr
 
-from hystkit.analyses.noise.asked import (
-    Floats,
-    Values,
-    broadcast,
-    check_noise,
-    plain,
-    read_positive,
-    read_value,
-)
+from hystkit.analyses.noise.asked import broadcast, check_noise, plain
 from hystkit.analyses.noise.model import Noise
 from hystkit.base.errors import Fault
+from hystkit.circuit.arrays import Floats, Values, read_array, read_positives
 
 # Beyond so many sigma nothing ever happens.
 _FAR = 25.0
@@ -65,7 +58,7 @@ def false_trip_rate(distance: Values, noise: Noise) -> Any:
     0.1937
     """
     faults: list[Fault] = []
-    away = read_positive(faults, "distance", distance, "V", zero=True)
+    away = read_positives(faults, "distance", distance, "V", zero=True)
     check_noise(faults, noise)
     (away,) = broadcast("this rate", faults, {"distance": away})
     return plain(noise.crossing_rate * np.exp(-((away / noise.rms) ** 2) / 2))
@@ -117,8 +110,8 @@ def standing_cycles(to_upper: Values, to_lower: Values, noise: Noise) -> Any:
     """
     faults: list[Fault] = []
     given = {
-        "to_upper": read_value(faults, "to_upper", to_upper, "V"),
-        "to_lower": read_value(faults, "to_lower", to_lower, "V"),
+        "to_upper": read_array(faults, "to_upper", to_upper, "V"),
+        "to_lower": read_array(faults, "to_lower", to_lower, "V"),
     }
     check_noise(faults, noise)
     if all(one.ndim == 0 for one in given.values()) and sum(given.values()) <= 0:

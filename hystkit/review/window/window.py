@@ -19,6 +19,7 @@ from hystkit.circuit.reading import Quantity, is_kind, wrong_kind
 from hystkit.numeric.views import Interval
 from hystkit.review.axis import Axis
 from hystkit.review.evidence import Evidence
+from hystkit.review.service import at
 from hystkit.review.trip_checks import error_move
 from hystkit.review.window.bound import Bound
 from hystkit.review.window.conditions import Conditions, read_conditions
@@ -164,7 +165,7 @@ def width_window(
     hum : pair of float or str, optional
         Amplitude [V] and frequency [Hz] of hum on the signal.
     load_step : LoadStep, float or str, optional
-        What the load's own step takes of the width [V].
+        What the load's own step takes of the width [V]; found again for another design.
     plant : Plant, optional
         What the load acts on, in the unit of the signal.
     starts_per_hour : float or str, optional
@@ -219,7 +220,7 @@ def width_window(
         "probability": probability,
         "slope": slope,
         "hum": hum,
-        "load_step": load_step,
+        "load_step": at(load_step, design) if isinstance(load_step, LoadStep) else load_step,
         "plant": plant,
         "starts_per_hour": starts_per_hour,
         "min_on": min_on,
