@@ -78,7 +78,7 @@ _HOME = {
     "drive": "analyses.drive.drive:drive",
     "Drive": "analyses.drive.result:Drive",
     "drives": "analyses.drive.drives",
-    "contact_life": "analyses.drive.contacts:contact_life",
+    "contact_life": "numeric.contacts:contact_life",
     "Noise": "analyses.noise.model:Noise",
     "Chatter": "analyses.noise.chatter:Chatter",
     "chatter": "analyses.noise.chatter:chatter",
@@ -91,6 +91,8 @@ _HOME = {
     "WidthWindow": "review.window.window:WidthWindow",
     "cycling": "review.cycling:cycling",
     "Cycling": "review.cycling:Cycling",
+    "noise_scene": "review.noise_scene:noise_scene",
+    "NoiseScene": "review.noise_scene:NoiseScene",
     "review": "review.review:review",
     "Review": "review.finding:Review",
     "Finding": "review.finding:Finding",
@@ -132,7 +134,6 @@ if TYPE_CHECKING:
     from hystkit.analyses.cycle.simulate import simulate as simulate
     from hystkit.analyses.cycle.steady import steady_cycle as steady_cycle
     from hystkit.analyses.drive import drives as drives
-    from hystkit.analyses.drive.contacts import contact_life as contact_life
     from hystkit.analyses.drive.drive import drive as drive
     from hystkit.analyses.drive.result import Drive as Drive
     from hystkit.analyses.load_step.result import LoadStep as LoadStep
@@ -183,6 +184,7 @@ if TYPE_CHECKING:
     from hystkit.circuit.stage import Stage as Stage
     from hystkit.export.page.writer import page_fragment as page_fragment
     from hystkit.export.page.writer import write_page as write_page
+    from hystkit.numeric.contacts import contact_life as contact_life
     from hystkit.numeric.levels import levels as levels
     from hystkit.numeric.loop import loop as loop
     from hystkit.numeric.response import response as response
@@ -195,6 +197,8 @@ if TYPE_CHECKING:
     from hystkit.review.cycling import cycling as cycling
     from hystkit.review.finding import Finding as Finding
     from hystkit.review.finding import Review as Review
+    from hystkit.review.noise_scene import NoiseScene as NoiseScene
+    from hystkit.review.noise_scene import noise_scene as noise_scene
     from hystkit.review.review import review as review
     from hystkit.review.window.window import WidthWindow as WidthWindow
     from hystkit.review.window.window import width_window as width_window

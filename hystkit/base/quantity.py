@@ -67,6 +67,38 @@ def read(value: float | str, *, unit: str = "", name: str = "value") -> float:
     return number
 
 
+def read_own(value: float | str, *, unit: str = "", name: str = "value") -> float:
+    """Return a measured quantity in its own unit: as `read`, but a percent counts as 1.
+
+    Parameters
+    ----------
+    value : float or str
+        A number, or text that may name the unit.
+    unit : str, optional
+        Unit of the quantity, such as ``"°C"``, or ``"%"`` of a valve's opening.
+    name : str, optional
+        What the number is, for the error.
+
+    Returns
+    -------
+    float
+        Finite.
+
+    Raises
+    ------
+    QuantityError
+        As from `read`.
+
+    Examples
+    --------
+    >>> read_own("45 %", unit="%"), read_own(45, unit="%"), read_own("80 mm", unit="m")
+    (45.0, 45.0, 0.08)
+    """
+    if unit == "%" and isinstance(value, str):
+        return read(value.strip().removesuffix("%"), name=name)
+    return read(value, unit=unit, name=name)
+
+
 def parse_percent(text: float | str, *, name: str = "tolerance", bare: bool = False) -> float:
     """Return a tolerance as a fraction.
 
@@ -151,6 +183,26 @@ def show_span(low: float, high: float, unit: str = "") -> str:
     """
     digits = span_digits(low, high)
     return " to ".join(show(end, unit, digits) for end in (low, high))
+
+
+def show_own(value: float, unit: str = "", digits: int = 4) -> str:
+    """Return a measured quantity in its own unit: a level in m does not turn into mm.
+
+    Parameters
+    ----------
+    value : float
+        In `unit`, in which a percent counts as 1.
+    unit : str, optional
+        Any unit; it takes no prefix.
+    digits : int, optional
+        Significant digits, >= 1; trailing zeros are dropped.
+
+    Examples
+    --------
+    >>> show_own(0.79, "m"), show_own(45, "%"), show_own(12345.6, "Pa")
+    ('0.79 m', '45 %', '12350 Pa')
+    """
+    return "—" if math.isnan(value) else f"{show(value, '', digits)} {unit}".rstrip()
 
 
 def show_latex(value: float, unit: str = "", digits: int = 4) -> str:

@@ -50,7 +50,7 @@ class DeviceClass(Viewed):
     def _fields(self) -> Sequence[Field]:
         device = self.device
         rows = [
-            Field(name, getattr(device, name), UNITS[name], _limits(device, name))
+            Field(name, getattr(device, name), UNITS[name], _note(device, name))
             for name in device.typical
         ]
         return [*rows, Field("watch", self.watch)] if self.watch else rows
@@ -110,10 +110,14 @@ def device_of_class(name: str, output: str) -> Device:
     raise DesignError.of("this device class", [fault])
 
 
-def _limits(device: Device, name: str) -> str:
+def _note(device: Device, name: str) -> str:
     if name not in device.limits:
-        return ""
+        return _REFERRED.get(name, "")
     return " to ".join(show(end, UNITS[name]) for end in device.limits[name])
+
+
+#: What a voltage is counted from.
+_REFERRED = {"common_mode_low": "above V_EE", "common_mode_high": "below V_CC"}
 
 
 def _class(name: str, output: str, watch: str, **stated: Any) -> tuple[str, DeviceClass]:

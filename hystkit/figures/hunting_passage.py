@@ -15,7 +15,7 @@ from hystkit.analyses.load_step.hunting import Hunting, Leg, Samples
 MOST_CHANGES = 40
 # Space beside the changes, as a share of the time between the first and the last one, and of the
 # whole way at least; a single change has more.
-_BESIDE, _OF_WAY, _OF_WAY_ALONE = 0.15, 0.01, 0.12
+_BESIDE, _OF_WAY, _OF_WAY_ALONE = 0.15, 0.01, 0.05
 # Samples of the signal across the picture, and of the whole simulation at most.
 _SAMPLES, _MOST_SAMPLES = 2001, 400_000
 

@@ -32,7 +32,7 @@ from hystkit.figures.theme import MARKS, Theme
 from hystkit.figures.trip_tags import TripTags, trips_in_words
 from hystkit.numeric.levels import levels
 from hystkit.numeric.views import Interval, Levels
-from hystkit.numeric.yields import Window, Yield
+from hystkit.numeric.yields import Window, Yield, percent
 
 TRIPS = ("lower", "upper")
 _BAR_PX = 2.0
@@ -254,9 +254,9 @@ class SpreadPicture(Picture[WindowedSpread]):
             if window is not None:
                 words.append(f"wanted {window_text(window)}")
         if data.share is not None:
-            words.append(f"yield {100 * data.share.value:.4g} %")
+            words.append(f"yield {percent(data.share.value)}")
         if data.sensed_share is not None:
-            words.append(f"with the signal {100 * data.sensed_share.value:.4g} %")
+            words.append(f"with the signal {percent(data.sensed_share.value)}")
         if not data.spread.switches and self._drawn:
             words.append(data.spread.message)
         return "; ".join(words) + "."

@@ -16,7 +16,7 @@ from hystkit.figures.lettering import width_px as length_of
 from hystkit.figures.placement import thinned
 from hystkit.figures.ruler_plan import EDGE
 from hystkit.figures.theme import Theme
-from hystkit.numeric.yields import Window, Yield
+from hystkit.numeric.yields import Window, Yield, percent
 
 if TYPE_CHECKING:
     from hystkit.figures.spread import WindowedSpread
@@ -194,9 +194,9 @@ class Key:
         if share is None:
             tag.hide()
             return
-        name = f"{name} {_percent(share.value)}"
+        name = f"{name} {percent(share.value)}"
         confidence = f", {100 * share.confidence:g} % confidence" if is_first else ""
-        text = f"({_percent(share.low)} to {_percent(share.high)}{confidence})"
+        text = f"({percent(share.low)} to {percent(share.high)}{confidence})"
         room = self._width - 2 * EDGE - length_of(name, "small", bold=True) - Tag.space
         tag.write([name, one_line(text, room, "small")])
         tag.put(EDGE, baseline)
@@ -240,9 +240,3 @@ def _verdict(data: WindowedSpread, trip: str) -> str:
     low, high = window
     held = (low is None or low <= limits[0]) and (high is None or limits[1] <= high)
     return ": ✓ always held" if held else ": ! not always held"
-
-
-def _percent(share: float) -> str:
-    # Never 100 % where a single sample failed.
-    text = f"{100 * share:.4g}"
-    return f"{text if share == 1 or text != '100' else '> 99.99'} %"

@@ -8,9 +8,11 @@ from typing import Any, Literal, NamedTuple
 
 import numpy as np
 
+from hystkit.base.digits import span_digits
 from hystkit.base.errors import UnknownNameError
 from hystkit.base.fields import Field, Viewed
 from hystkit.base.nearest import unknown_name_fault
+from hystkit.base.quantity import show_own
 
 Trip = Literal["lower", "upper"]
 LOADS = ("high", "low")
@@ -94,19 +96,12 @@ class Measurand(Viewed):
         ends = [
             Field(
                 f"{self.name}, {end}",
-                self._plain(getattr(self, end)),
+                shown_span(getattr(self, end), self.unit),
                 note=f"{trips[end]} trip point; the output goes {goes[end]} here",
             )
             for end in ("low", "high")
         ]
-        return [*ends, Field(f"{self.name}, width", self._plain(self.width))]
-
-    def _plain(self, values: Any) -> str:
-        """Write values in the unit itself: a level in m does not turn into mm."""
-        found = span_of(values)
-        low, high = found if isinstance(found, tuple) else (found, found)
-        ends = dict.fromkeys(f"{end:.4g}" for end in (low, high))
-        return f"{' to '.join(ends)} {self.unit}".rstrip()
+        return [*ends, Field(f"{self.name}, width", shown_span(self.width, self.unit))]
 
 
 def load_edges(sense: str, load: str = "high") -> Edges:
@@ -157,6 +152,28 @@ def span_of(values: Any) -> float | tuple[float, float]:
         return float("nan")
     low, high = float(possible.min()), float(possible.max())
     return low if low == high else (low, high)
+
+
+def shown_span(values: Any, unit: str) -> str:
+    """Write the span of values in the unit itself: a level in m does not turn into mm.
+
+    Parameters
+    ----------
+    values : float or array_like
+        Of any shape.
+    unit : str
+        Their unit.
+
+    Returns
+    -------
+    str
+        Such as "0.79 m", or "0.79 to 1.43 m" of an array; a dash where nothing is possible.
+    """
+    found = span_of(values)
+    if not isinstance(found, tuple):
+        return show_own(found, unit)
+    digits = span_digits(*found)
+    return f"{show_own(found[0], digits=digits)} to {show_own(found[1], unit, digits)}"
 
 
 def _other(trip: Trip) -> Trip:

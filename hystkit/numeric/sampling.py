@@ -5,12 +5,15 @@ from __future__ import annotations
 from collections.abc import Iterator, Mapping
 from dataclasses import dataclass
 from functools import lru_cache
+from math import isfinite
+from numbers import Integral, Real
+from typing import Any
 
 import numpy as np
 from numpy.typing import NDArray
 from scipy.special import ndtr, ndtri
 
-from hystkit.base.errors import UnknownNameError
+from hystkit.base.errors import Fault, UnknownNameError
 from hystkit.base.nearest import unknown_name_fault
 from hystkit.circuit.design import Design
 from hystkit.numeric.compile import kernel
@@ -213,3 +216,63 @@ def _normal(sigmas: float) -> Array:
 def _shares() -> Array:
     """Middles of the steps in the lower half of a distribution."""
     return (np.arange(_STEPS // 2) + 0.5) / _STEPS
+
+
+def request_faults(
+    temperature: Any, samples: Any, seed: Any, distribution: Any, sigmas: Any
+) -> list[Fault]:
+    """Check what a spread is asked for.
+
+    Parameters
+    ----------
+    temperature : object
+        Range in service [°C], or None.
+    samples, seed, distribution, sigmas : object
+        Of a `Plan`, as given.
+
+    Returns
+    -------
+    list of Fault
+        One for each argument that cannot be used.
+    """
+    faults = []
+    if temperature is not None and not _is_range(temperature):
+        faults.append(
+            Fault(
+                "the temperature is not a range.",
+                asked=f"temperature={temperature!r}",
+                rule="two numbers in °C, the lower one first",
+                remedy="temperature=(-20, 60), or None to leave drift out",
+            )
+        )
+    for name, value, least in (("samples", samples, 1), ("seed", seed, 0)):
+        if not _is_whole(value, least):
+            faults.append(
+                Fault(
+                    f"{name} is not a whole number of at least {least}.",
+                    asked=f"{name}={value!r}",
+                    remedy=f"a number such as {name}={65536 if least else 0}",
+                )
+            )
+    if distribution not in DISTRIBUTIONS:
+        faults.append(unknown_name_fault("distribution", str(distribution), DISTRIBUTIONS))
+    if not isinstance(sigmas, Real) or not 0 < float(sigmas) <= 8:
+        faults.append(
+            Fault(
+                "sigmas is not a number of standard deviations.",
+                asked=f"sigmas={sigmas!r}",
+                rule="0 < sigmas <= 8: half a range, such as a tolerance, in standard deviations",
+                remedy="sigmas=3",
+            )
+        )
+    return faults
+
+
+def _is_whole(value: Any, least: int) -> bool:
+    return not isinstance(value, bool) and isinstance(value, Integral) and int(value) >= least
+
+
+def _is_range(ends: Any) -> bool:
+    if isinstance(ends, str) or not hasattr(ends, "__len__") or len(ends) != 2:
+        return False
+    return all(isinstance(end, Real) and isfinite(end) for end in ends) and ends[0] <= ends[1]

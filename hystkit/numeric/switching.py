@@ -8,6 +8,8 @@ import numpy as np
 from numpy.typing import ArrayLike, NDArray
 
 from hystkit.base.errors import Fault, InputError
+from hystkit.circuit.arrays import read_array
+from hystkit.circuit.reading import wrong_kind
 
 # Most samples of a block: the place and the state of each fit together into 16 bits.
 _LONGEST = 32766
@@ -16,8 +18,8 @@ _SHORTEST = 256
 
 def simulate_switch(
     samples: ArrayLike,
-    upper: ArrayLike,
-    lower: ArrayLike,
+    upper: ArrayLike | str,
+    lower: ArrayLike | str,
     start: ArrayLike | None = None,
 ) -> NDArray[np.bool_]:
     """Follow a switch with hysteresis through a record.
@@ -26,7 +28,7 @@ def simulate_switch(
     ----------
     samples : array_like, shape (..., n)
         Signal at the instants of a record, the last axis is time [V].
-    upper, lower : float or array_like
+    upper, lower : float, str or array_like
         Trip points [V]; arrays broadcast against `samples`, so that they may differ from sample
         to sample or from record to record.
     start : bool or array_like, shape (...), optional
@@ -87,12 +89,20 @@ def _first(signal: Any, above: Any, below: Any) -> NDArray[np.uint16]:
 
 
 def _checked(
-    samples: ArrayLike, upper: ArrayLike, lower: ArrayLike, start: ArrayLike | None
+    samples: ArrayLike,
+    upper: ArrayLike | str,
+    lower: ArrayLike | str,
+    start: ArrayLike | None,
 ) -> tuple[Any, Any, Any, Any]:
     """Take everything as arrays, or report all that is wrong."""
     faults: list[Fault] = []
-    given = {"samples": samples, "upper": upper, "lower": lower}
-    signal, above, below = (_array(faults, name, value) for name, value in given.items())
+    signal = _record(faults, samples)
+    above, below = (
+        read_array(faults, name, trip, "V", finite=False)
+        for name, trip in (("upper", upper), ("lower", lower))
+    )
+    if start is not None and np.asarray(start).dtype != bool:
+        faults.append(wrong_kind("start", start, "True or False", "start=False, for the low state"))
     if not faults and signal.ndim == 0:
         faults.append(
             Fault(
@@ -125,15 +135,15 @@ def _checked(
     return signal, above, below, state
 
 
-def _array(faults: list[Fault], name: str, value: ArrayLike) -> Any:
+def _record(faults: list[Fault], samples: ArrayLike) -> Any:
     try:
-        return np.asarray(value, dtype=np.float64)
+        return np.asarray(samples, dtype=np.float64)
     except (TypeError, ValueError):
         faults.append(
             Fault(
-                f"{name} does not hold numbers.",
-                have=type(value).__name__,
-                remedy="a number or an array of numbers",
+                "samples does not hold numbers.",
+                have=type(samples).__name__,
+                remedy="an array of numbers",
             )
         )
         return np.zeros(1)

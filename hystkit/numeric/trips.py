@@ -13,6 +13,7 @@ from hystkit.base.errors import Fault, InputError, QuantityError, UnknownNameErr
 from hystkit.base.fields import Field, Viewed
 from hystkit.base.nearest import unknown_name_fault
 from hystkit.base.quantity import read
+from hystkit.circuit.arrays import together
 from hystkit.circuit.design import Design, law_values
 from hystkit.circuit.device import LAW_FIELDS, UNITS
 from hystkit.circuit.reading import collect, is_kind, wrong_kind
@@ -255,16 +256,9 @@ def _numbers(overrides: Mapping[str, Any]) -> dict[str, Any]:
     given = {name: _number(name, value, faults) for name, value in overrides.items()}
     if faults:
         raise QuantityError.of("these overrides", faults)
-    shapes = {name: np.shape(value) for name, value in given.items() if np.ndim(value)}
-    try:
-        np.broadcast_shapes(*shapes.values())
-    except ValueError:
-        raise InputError(
-            "these arrays do not broadcast.",
-            have=", ".join(f"{name} of shape {shape}" for name, shape in shapes.items()),
-            rule="shapes are equal, or 1, axis by axis from the last",
-            remedy="arrays of one length, or an axis of its own for each: R_T=x[:, None]",
-        ) from None
+    together(faults, given)
+    if faults:
+        raise InputError.of("these overrides", faults)
     return given
 
 

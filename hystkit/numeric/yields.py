@@ -45,10 +45,33 @@ class Yield(Viewed):
 
     def _fields(self) -> Sequence[Field]:
         note = f"{self.confidence:.0%} confidence"
+        between = f"{percent(self.low)} and {percent(self.high)}"
         return (
-            Field("yield", f"{100 * self.value:.4g} %", note=f"{self.passed} of {self.samples}"),
-            Field("between", f"{100 * self.low:.4g} % and {100 * self.high:.4g} %", note=note),
+            Field("yield", percent(self.value), note=f"{self.passed} of {self.samples}"),
+            Field("between", between, note=note),
         )
+
+
+def percent(share: float) -> str:
+    """Write a share of units; never 100 % where a single one failed.
+
+    Parameters
+    ----------
+    share : float
+        [1].
+
+    Returns
+    -------
+    str
+        With the sign for per cent.
+
+    Examples
+    --------
+    >>> percent(65535 / 65536), percent(0.9)
+    ('> 99.99 %', '90 %')
+    """
+    text = f"{100 * share:.4g}"
+    return f"{text if share == 1 or text != '100' else '> 99.99'} %"
 
 
 def yield_of(

@@ -127,25 +127,36 @@ class CyclePanel(AskingPanel):
         desk = self._desk
         self.plant_section = PlantSection(desk, lambda: self.request, self._level_step)
         rows: list[Asked | Chosen] = [Chosen(desk, "load", "load is on at", _STATES)]
-        for name, label in (("min_on", "on at least"), ("min_off", "off at least")):
-            says = f"time that the load stays {label}, kept by a timer [s]"
-            reads = partial(_read_hold, label)
-            rows.append(Asked(desk, name, label, says, reads, _write_hold, "no timer, s"))
-        for name, label, says in (
-            ("starts_per_hour", "starts per h", "starts per hour that the load stands at most"),
-            ("operations", "contact life", "operations that the contact is rated for"),
-        ):
-            reads, writes = partial(_read_optional, label, ""), partial(_write_optional, "")
-            placeholder = "any" if name == "starts_per_hour" else "rated operations"
-            rows.append(Asked(desk, name, label, says, reads, writes, placeholder))
-        says = "process value that a run starts from; empty for the steady cycle"
-        rows.append(
-            Asked(desk, "start", "start from", says, self._read_start, self._write_start,
-                  "steady cycle")
-        )  # fmt: skip
-        reads, writes = partial(_read_optional, "length", "s"), partial(_write_optional, "s")
-        says = "how long a run from a start takes [s]"
-        rows.append(Asked(desk, "until", "for", says, reads, writes, "as long as it takes"))
+        holds = (("min_on", "on at least"), ("min_off", "off at least"))
+        rows += [
+            Asked(
+                desk,
+                name,
+                label,
+                f"time that the load stays {label}, kept by a timer [s]",
+                partial(_read_hold, label),
+                _write_hold,
+                "no timer, s",
+            )
+            for name, label in holds
+        ]
+        starts = "starts per hour that the load stands at most"
+        rows += [
+            self._optional("starts_per_hour", "starts per h", starts, "", "any"),
+            self._optional("operations", "operations", "rating of the contact", "", "not rated"),
+            Asked(
+                desk,
+                "start",
+                "start from",
+                "process value that a run starts from; empty for the steady cycle",
+                self._read_start,
+                self._write_start,
+                "steady cycle",
+            ),
+            self._optional(
+                "until", "run for", "how long a run from a start takes", "s", "as long as it takes"
+            ),
+        ]
         self.asked = RequestSection(desk, "Service", rows, lambda: self.request)
         return (self.plant_section, self.asked)
 
@@ -176,6 +187,10 @@ class CyclePanel(AskingPanel):
     def _level_step(self) -> float:
         axis = self._run[2].axis
         return _FIRST_STEP if axis is None else step_for(axis.width, _ACROSS)
+
+    def _optional(self, name: str, label: str, says: str, unit: str, placeholder: str) -> Asked:
+        reads, writes = partial(_read_optional, label, unit), partial(_write_optional, unit)
+        return Asked(self._desk, name, label, says, reads, writes, placeholder)
 
     def _read_start(self, text: str) -> float | None:
         unit = _unit(self.design)
@@ -251,7 +266,7 @@ def _reviewed(design: Design, request: CycleRequest, found: Cycling) -> Review:
     return review(design, load=request.load, plant=plant, **_declared(request))
 
 
-def _declared(request: CycleRequest) -> dict[str, float | None]:
+def _declared(request: CycleRequest) -> dict[str, Any]:
     """Give what the load is declared to stand; no minimum time is none that is declared."""
     return {
         "starts_per_hour": request.starts_per_hour,

@@ -130,6 +130,7 @@ CSS = """
   }
   .hystkit-panel .hystkit-wrapped td:empty { display: none; }
   .hystkit-panel .hystkit-wrapped td:nth-child(3)::before { content: "margin: "; }
+  .hystkit-panel .hystkit-bounds td:nth-child(3)::before { content: none; }
   .hystkit-panel .hystkit-wrapped td:nth-child(4)::before { content: "to change: "; }
 }
 .hystkit-panel .hystkit-candidate { padding: 3px 0; overflow: visible; }

@@ -10,6 +10,7 @@ from hystkit.circuit.signals import Signal
 from hystkit.figures.spread import WindowedSpread
 from hystkit.numeric.trips import TripPoints
 from hystkit.numeric.views import Interval
+from hystkit.numeric.yields import percent
 from hystkit.panels.table import Rows
 
 _KINDS = ("upper", "lower", "width", "middle")
@@ -46,7 +47,7 @@ def spread_rows(shown: WindowedSpread, trips: TripPoints) -> Rows:
     for name, share in shares.items():
         if share is None:
             continue
-        row = [name, _percent(share.value), f"{_percent(share.low)} to {_percent(share.high)}"]
+        row = [name, percent(share.value), f"{percent(share.low)} to {percent(share.high)}"]
         row += [f"at {100 * share.confidence:g} %"] + [""] * (signal is not None)
         rows.append(tuple(row))
     return rows
@@ -64,8 +65,3 @@ def _interval(ends: Interval, unit: str) -> str:
     if math.isnan(ends[0]):
         return show(ends[0], unit)
     return f"{show(ends[0], unit)} to {show(ends[1], unit)}"
-
-
-def _percent(share: float) -> str:
-    text = f"{100 * share:.4g}"
-    return f"{text if share == 1 or text != '100' else '> 99.99'} %"

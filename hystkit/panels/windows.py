@@ -6,7 +6,7 @@ import math
 import re
 
 from hystkit.base.errors import Fault, InputError
-from hystkit.base.quantity import read
+from hystkit.base.quantity import read, read_own
 from hystkit.circuit.signals import Signal
 from hystkit.numeric.yields import Window
 from hystkit.panels.texts import amount
@@ -181,7 +181,7 @@ def _turned(text: str, signal: Signal | None) -> bool:
 def _volts(pieces: list[str], signal: Signal | None, name: str, unit: str) -> list[float]:
     if signal is None or not _in_measurand(pieces[-1], signal):
         return [read(piece, unit=unit, name=name) for piece in pieces]
-    quantities = [read(piece, unit=signal.unit, name=name) for piece in pieces]
+    quantities = [read_own(piece, unit=signal.unit, name=name) for piece in pieces]
     found = [float(signal.volts(quantity)) for quantity in quantities]
     if not all(math.isfinite(volts) for volts in found):
         raise _refused(f"{name} is nothing that the signal can be.", " to ".join(pieces))

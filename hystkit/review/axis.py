@@ -5,11 +5,15 @@ from __future__ import annotations
 import math
 from dataclasses import dataclass
 from functools import cached_property
+from typing import Any
 
+import numpy as np
 from scipy.optimize import brentq
 
+from hystkit.analyses.cycle.plants import Plant
 from hystkit.analyses.cycle.result import Cycle
-from hystkit.base.errors import DesignError
+from hystkit.base.errors import DesignError, Fault
+from hystkit.base.quantity import show_own
 from hystkit.circuit.design import Design
 from hystkit.circuit.signals import Signal
 from hystkit.numeric.measurand import load_edges
@@ -19,6 +23,33 @@ from hystkit.numeric.trips import TripPoints, trip_points
 _WIDTHS = 100.0
 #: Step for the slope of a signal, as a share of the longest width.
 _STEP = 1e-5
+
+
+def unit_faults(plant: Plant, unit: str) -> list[Fault]:
+    """Check that a plant is in the unit of the trips.
+
+    Parameters
+    ----------
+    plant : Plant
+        One that states no unit is in any.
+    unit : str
+        Of the trips.
+
+    Returns
+    -------
+    list of Fault
+        Empty where it is.
+    """
+    if plant.unit in ("", unit):
+        return []
+    return [
+        Fault(
+            "plant and signal have different units.",
+            asked=f"plant in {plant.unit}",
+            have=f"signal in {unit}",
+            remedy="one unit for both",
+        )
+    ]
 
 
 @dataclass(frozen=True)
@@ -79,6 +110,8 @@ class Axis:
                 remedy="hk.review(design) tells why",
             )
         signal = design.signal
+        if signal is not None:
+            _check_span(signal, (on_at + off_at) / 2)
         return cls(
             unit="V" if signal is None else signal.unit,
             name="signal" if signal is None else signal.name,
@@ -126,7 +159,7 @@ class Axis:
             [V].
         """
         on_at, off_at = self.edges(width)
-        return abs(self._volts(off_at) - self._volts(on_at))
+        return abs(float(self._volts(off_at) - self._volts(on_at)))
 
     def width_of(self, volts: float) -> float:
         """Give the width whose trip points lie this far apart.
@@ -147,42 +180,43 @@ class Axis:
             return math.inf
         return float(brentq(lambda width: self.volts(width) - volts, 0.0, self.longest))
 
-    def slope(self, quantity: float) -> float:
+    def slope(self, quantity: Any) -> Any:
         """Volts per unit of the quantity, without their sign.
 
         Parameters
         ----------
-        quantity : float
+        quantity : float or ndarray
             In `unit`.
 
         Returns
         -------
-        float
+        float or ndarray
             [V/unit].
         """
         step = _STEP * self.longest
-        return abs(self._volts(quantity + step) - self._volts(quantity - step)) / (2 * step)
+        return np.abs(self._volts(quantity + step) - self._volts(quantity - step)) / (2 * step)
 
-    def passage(self, cycle: Cycle, width: float) -> float:
+    def passage(self, cycle: Cycle, width: Any) -> Any:
         """Give the slope of the signal where a cycle passes the trips, the slower one of both.
 
         Parameters
         ----------
         cycle : Cycle
             Between the edges of the width.
-        width : float
+        width : float or ndarray
             In `unit`.
 
         Returns
         -------
-        float
+        float or ndarray
             [V/s]; NaN where there is no cycle.
         """
         rates = zip((cycle.rate_at_on, cycle.rate_at_off), self.edges(width), strict=True)
-        return min(abs(float(rate)) * self.slope(at) for rate, at in rates)
+        on, off = (np.abs(rate) * self.slope(at) for rate, at in rates)
+        return np.minimum(on, off)
 
-    def _volts(self, quantity: float) -> float:
-        return quantity if self.signal is None else float(self.signal.volts(quantity))
+    def _volts(self, quantity: Any) -> Any:
+        return quantity if self.signal is None else self.signal.volts(quantity)
 
 
 def _edges(design: Design, trips: TripPoints, load: str) -> tuple[float, float]:
@@ -192,3 +226,14 @@ def _edges(design: Design, trips: TripPoints, load: str) -> tuple[float, float]:
         return float(on_at), float(off_at)
     on, off = load_edges(design.stage.sense, load)
     return float(getattr(trips, on)), float(getattr(trips, off))
+
+
+def _check_span(signal: Signal, middle: float) -> None:
+    low, high = signal.span
+    if not low < middle < high:
+        raise DesignError(
+            "the middle of the band lies outside the signal's span.",
+            asked=f"a band about {show_own(middle, signal.unit)}",
+            have=f"a span of {show_own(low)} to {show_own(high, signal.unit)}",
+            remedy="other trips, or the span that the quantity really has",
+        )

@@ -260,18 +260,18 @@ def cycling(
     names = (str(edges.on_at), str(edges.off_at))
     found = levels(design)
     unit = "V" if design.signal is None else design.signal.unit
-    times = _checked(plant, unit, {"min_on": min_on, "min_off": min_off, "until": until})
-    if until is None and start is None and len(disturbances):
-        raise InputError.of("this cycle", [_NO_START])
+    faults = [_NO_START] if start is None and disturbances else []
+    given = {"min_on": min_on, "min_off": min_off, "until": until}
+    times = _checked(plant, unit, given, faults)
     try:
         axis = Axis.of(design, load)
     except DesignError as error:
         fault = found.message or error.faults[0].have
         return Cycling(found, plant, load, names, None, None, None, (0.0, 1.0), False, fault)
-    until = times.pop("until")
+    length = times.pop("until")
     on_at, off_at = axis.edges(axis.width)
     cycle = steady_cycle(plant, on_at, off_at, **times)
-    shown = Control(plant, on_at, off_at, **times, cycle=cycle).shown(start, until, disturbances)
+    shown = Control(plant, on_at, off_at, **times, cycle=cycle).shown(start, length, disturbances)
     span = (shown.begin, shown.end)
     return Cycling(found, plant, load, names, axis, cycle, shown.run, span, shown.steady)
 
@@ -309,9 +309,10 @@ _NO_START = Fault(
 )
 
 
-def _checked(plant: Any, unit: str, times: dict[str, Quantity | None]) -> dict[str, Any]:
-    """Read the times, and refuse whatever cannot be run."""
-    faults: list[Fault] = []
+def _checked(
+    plant: Any, unit: str, times: dict[str, Quantity | None], faults: list[Fault]
+) -> dict[str, Any]:
+    """Read the times, and refuse whatever cannot be run together with the faults found before."""
     read_times: dict[str, Any] = {}
     for name, value in times.items():
         read_times[name] = None if value is None else _read_time(faults, name, value)

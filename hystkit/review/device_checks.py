@@ -79,8 +79,7 @@ def output_current(evidence: Evidence) -> Iterator[Finding]:
     if evidence.design.stage.output == "push-pull":
         sides.append(("output high", "high", 1, device.source_current))
     for name, state, sign, most in sides:
-        currents = [sign * float(p.output_current) for p in evidence.points if p.state == state]
-        current = max(currents)
+        current = _driven(evidence, state, sign)
         verb = "sinks" if state == "low" else "sources"
         text = f"the output {verb} {show(current, 'A', 3)}"
         if most is None:
@@ -95,6 +94,14 @@ def output_current(evidence: Evidence) -> Iterator[Finding]:
             "A",
             "" if margin >= 0 else "larger pull-up, feedback or load resistors",
         )
+
+
+def _driven(evidence: Evidence, state: str, sign: int) -> float:
+    """Highest current that the output drives; that of a declared drive knows when it blocks."""
+    drive = evidence.service.drive
+    if drive is not None and evidence.design in (drive.design, drive.given):
+        return drive.output_current(state)
+    return max(sign * float(p.output_current) for p in evidence.points if p.state == state)
 
 
 def loading(evidence: Evidence) -> Iterator[Finding]:

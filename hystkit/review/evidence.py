@@ -13,6 +13,7 @@ import numpy as np
 from hystkit.analyses.cycle.result import Cycle
 from hystkit.analyses.cycle.steady import steady_cycle
 from hystkit.analyses.load_step.result import LoadStep
+from hystkit.base.errors import DesignError
 from hystkit.circuit.design import Design
 from hystkit.circuit.netlist import netlist
 from hystkit.numeric.compile import kernel
@@ -79,15 +80,20 @@ class Evidence:
         return upper, lower
 
     @cached_property
-    def axis(self) -> Axis:
-        """The band in the unit of the signal, with the edges of the load."""
-        return Axis.of(self.design, self.load)
+    def axis(self) -> Axis | None:
+        """The band in the unit of the signal; None where the signal does not reach it."""
+        try:
+            return Axis.of(self.design, self.load)
+        except DesignError:
+            return None
 
     @cached_property
     def cycle(self) -> Cycle | None:
-        """Steady cycle of the declared plant between the trips; None without a plant."""
-        plant = self.service.plant
-        return None if plant is None else steady_cycle(plant, *self.axis.edges(self.axis.width))
+        """Steady cycle of the declared plant between the trips; None without either."""
+        plant, axis = self.service.plant, self.axis
+        if plant is None or axis is None:
+            return None
+        return steady_cycle(plant, *axis.edges(axis.width))
 
     @cached_property
     def load_step(self) -> LoadStep | None:
@@ -99,7 +105,9 @@ class Evidence:
         """Slope of the signal at the trips [V/s]: as declared, or of the cycle; NaN unknown."""
         if self.service.slope is not None:
             return self.service.slope
-        return math.nan if self.cycle is None else self.axis.passage(self.cycle, self.axis.width)
+        if self.cycle is None or self.axis is None:
+            return math.nan
+        return float(self.axis.passage(self.cycle, self.axis.width))
 
     @property
     def width(self) -> float:

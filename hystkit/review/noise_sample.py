@@ -1,4 +1,4 @@
-"""One passage of a noisy signal through the band of a stage: a seeded sample, and the output to it."""
+"""A noisy signal that passes the band of a stage: a seeded sample, and the output to it."""
 
 from __future__ import annotations
 

@@ -33,7 +33,7 @@ Array = NDArray[np.float64]
 _LEAST, _MOST = 1.0, 12.0
 #: Room beyond the widths that are marked, as a factor.
 _BESIDE = 1.3
-_POINTS = 181
+_POINTS = 121
 # Ends of the range of widths, times powers of ten: it follows its content in steps.
 _ENDS = (1.0, 2.0, 5.0, 10.0)
 _HOUR = 3600.0
@@ -252,8 +252,8 @@ def noise_scene(
     )
 
 
-def first_noise(design: Design) -> tuple[Noise, float]:
-    """Give noise and a slope that suit the band of a design, to begin with.
+def first_noise(design: Design) -> Noise:
+    """Give noise that suits the band of a design, to begin with.
 
     Parameters
     ----------
@@ -262,15 +262,28 @@ def first_noise(design: Design) -> tuple[Noise, float]:
 
     Returns
     -------
-    noise : Noise
+    Noise
         A tenth of the width, behind two poles; nothing is known of the real one.
-    slope : float
-        At which it crosses its mean a hundred times while the ramp rises by its rms [V/s].
     """
     width = levels(design).width
     rms = _digit(width / 10) if math.isfinite(width) and width > 0 else 1e-3
-    noise = Noise.two_pole(rms=rms, f1=100.0, f2=10e3)
-    return noise, _digit(rms * noise.crossing_rate / 100)
+    return Noise.two_pole(rms=rms, f1=100.0, f2=10e3)
+
+
+def first_slope(noise: Noise) -> float:
+    """Give a slope to begin with.
+
+    Parameters
+    ----------
+    noise : Noise
+        On the signal.
+
+    Returns
+    -------
+    float
+        At which the noise crosses its mean a hundred times while the ramp rises by its rms [V/s].
+    """
+    return _digit(noise.rms * noise.crossing_rate / 100)
 
 
 def _checked(
@@ -291,7 +304,7 @@ def _checked(
             )
         )
     swing = None
-    if hum is not None and (not is_kind(hum, tuple) or len(hum) != 2):
+    if hum is not None and not (is_kind(hum, (tuple, list)) and len(hum) == 2):
         faults.append(wrong_kind("hum", hum, "a pair", 'hum=("30 mV", "100 Hz")'))
     elif hum is not None:
         swing = (

@@ -4,14 +4,15 @@ from __future__ import annotations
 
 from typing import Any
 
-from hystkit.base.errors import UnknownNameError
+from hystkit.base.errors import InputError, UnknownNameError
 from hystkit.base.nearest import unknown_name_fault
 from hystkit.circuit.design import Design
+from hystkit.review.axis import unit_faults
 from hystkit.review.device_checks import DEVICE_CHECKS
 from hystkit.review.evidence import Evidence
 from hystkit.review.finding import SIGNS, Finding, Review
 from hystkit.review.plant_checks import PLANT_CHECKS
-from hystkit.review.service import service_of
+from hystkit.review.service import Service, service_of
 from hystkit.review.service_checks import SERVICE_CHECKS
 from hystkit.review.trip_checks import TRIP_CHECKS
 
@@ -37,8 +38,8 @@ def review(
     start : {"high", "low"}, optional
         Output state that the stage is made to start in, by a reset or a capacitor.
     **service : object
-        What is declared about service, as for `Service`: noise, slope, probability, plant,
-        starts_per_hour, min_on, min_off, drive, load_step.
+        What is declared about service, as for `Service`: noise, slope, probability, hum,
+        plant, starts_per_hour, min_on, min_off, drive, load_step.
 
     Returns
     -------
@@ -65,13 +66,22 @@ def review(
     'pass'
     """
     _check_choices(load, safe, start)
-    evidence = Evidence(design, load, safe, start, service_of(service))
+    declared = service_of(service)
+    _check_units(design, declared)
+    evidence = Evidence(design, load, safe, start, declared)
     if not evidence.levels.ok:
         text = f"no trip points: {evidence.levels.message}"
         return Review((Finding("order", "fault", text, remedy="other part values or levels"),))
     checks = (*TRIP_CHECKS, *DEVICE_CHECKS, *PLANT_CHECKS, *SERVICE_CHECKS)
     found = [finding for check in checks for finding in check(evidence)]
     return Review(tuple(sorted(found, key=lambda f: list(SIGNS).index(f.severity))))
+
+
+def _check_units(design: Design, service: Service) -> None:
+    unit = "V" if design.signal is None else design.signal.unit
+    faults = [] if service.plant is None else unit_faults(service.plant, unit)
+    if faults:
+        raise InputError.of("this review", faults)
 
 
 def _check_choices(load: str, safe: str | None, start: str | None) -> None:

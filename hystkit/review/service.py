@@ -39,6 +39,8 @@ _UNITS = {
 def _read(faults: list[Fault], name: str, value: Any) -> Any:
     if value is None:
         return None
+    if name == "hum":
+        return read_hum(faults, value)
     if name in _KINDS:
         kind, example = _KINDS[name]
         if not is_kind(value, kind):
@@ -53,10 +55,67 @@ def _read(faults: list[Fault], name: str, value: Any) -> Any:
             )
         return value
     number = collect(faults, lambda: read(value, unit=_UNITS[name], name=name))
-    if number <= 0 or (name == "probability" and number >= 1):
-        rule = "0 < probability < 1" if name == "probability" else f"{name} > 0"
-        faults.append(Fault(f"{name} is out of range.", f"{name} = {number:g}", rule=rule))
+    share = name == "probability"
+    if number <= 0 or (share and number >= 1):
+        faults.append(out_of_range(name, number, share))
     return number
+
+
+def out_of_range(name: str, number: float, share: bool) -> Fault:
+    """Give the fault of a number that has to be positive, and below 1 where it is a share.
+
+    Parameters
+    ----------
+    name : str
+        Of the argument.
+    number : float
+        As it was given.
+    share : bool
+        Whether it is a share.
+
+    Returns
+    -------
+    Fault
+        To be reported.
+    """
+    return Fault(
+        f"{name} is not {'between 0 and 1' if share else 'above 0'}.",
+        asked=f"{name} = {number:g}",
+        rule=f"0 < {name} < 1" if share else f"{name} > 0",
+        remedy="leave it out for the usual value" if share else "its magnitude, or leave it out",
+    )
+
+
+def read_hum(faults: list[Fault], value: Any) -> tuple[float, float] | None:
+    """Read amplitude and frequency of hum.
+
+    Parameters
+    ----------
+    faults : list of Fault
+        Where what cannot be used is added.
+    value : pair of float or str
+        Amplitude [V] and frequency [Hz].
+
+    Returns
+    -------
+    tuple of float or None
+        None where it is no pair.
+    """
+    if isinstance(value, str) or not hasattr(value, "__len__") or len(value) != 2:
+        faults.append(wrong_kind("hum", value, "a pair", 'hum=("30 mV", "100 Hz")'))
+        return None
+    amplitude = collect(faults, lambda: read(value[0], unit="V", name="hum amplitude"))
+    frequency = collect(faults, lambda: read(value[1], unit="Hz", name="hum frequency"))
+    if amplitude <= 0 or frequency <= 0:
+        faults.append(
+            Fault(
+                "amplitude and frequency of hum are not both above 0.",
+                asked=f"hum = {value!r}",
+                rule="amplitude and frequency > 0",
+                remedy='hum=("30 mV", "100 Hz"), or leave it out',
+            )
+        )
+    return amplitude, frequency
 
 
 @dataclass(frozen=True)
@@ -71,6 +130,8 @@ class Service:
         Of the signal at the trips [V/s]; from the plant's cycle where left out.
     probability : float, default 1e-3
         Allowed probability of a further transition per passage.
+    hum : pair of float or str, optional
+        Amplitude [V] and frequency [Hz] of hum on the signal.
     plant : Plant, optional
         What the load acts on, in the unit of the signal.
     starts_per_hour : float or str, optional
@@ -92,6 +153,7 @@ class Service:
     noise: Noise | None = None
     slope: float | None = None
     probability: float = PROBABILITY
+    hum: tuple[float, float] | None = None
     plant: Plant | None = None
     starts_per_hour: float | None = None
     min_on: float | None = None
@@ -104,6 +166,7 @@ class Service:
         noise: Noise | None = None,
         slope: Quantity | None = None,
         probability: Quantity = PROBABILITY,
+        hum: tuple[Quantity, Quantity] | None = None,
         plant: Plant | None = None,
         starts_per_hour: Quantity | None = None,
         min_on: Quantity | None = None,

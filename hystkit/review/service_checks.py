@@ -8,10 +8,13 @@ from collections.abc import Iterator
 from hystkit.analyses.cycle.result import Cycle
 from hystkit.analyses.cycle.status import CycleStatus
 from hystkit.analyses.noise.chatter import chatter
+from hystkit.analyses.noise.hum import hum_width
 from hystkit.analyses.noise.inverse import width_for
-from hystkit.base.quantity import show
+from hystkit.analyses.noise.model import Noise
+from hystkit.base.quantity import show, show_own
 from hystkit.review.evidence import Evidence
 from hystkit.review.finding import Finding
+from hystkit.review.service import Service
 from hystkit.review.trip_checks import Check
 
 
@@ -33,26 +36,44 @@ def noise(evidence: Evidence) -> Iterator[Finding]:
         return
     slope = evidence.slope
     if math.isnan(slope):
-        yield Finding(
-            "noise",
-            "note",
-            f"noise of {show(service.noise.rms, 'V', 3)} rms; the signal's slope is not known",
-            remedy="slope=... in V/s, or plant=...",
-        )
+        yield _without_slope("noise", f"noise of {show(service.noise.rms, 'V', 3)} rms")
         return
-    needed = float(width_for(probability=service.probability, noise=service.noise, slope=slope))
+    needed = _for_noise(service, service.noise, slope)
     found = chatter(evidence.width, service.noise, slope)
-    margin = evidence.width - needed
-    chance = f"{float(found.probability):.2g} of the passages at {show(slope, 'V/s', 3)}"
-    text = f"noise switches again in {chance}, allowed are {service.probability:.2g}"
-    yield Finding(
-        "noise",
-        "pass" if margin >= 0 else "fault" if evidence.width < needed / 2 else "warning",
-        text if found.inside_range else f"{text}; {found.note}",
-        margin,
-        "V",
-        "" if margin >= 0 else f"a width of {show(needed, 'V', 3)}, a filter, or a faster passage",
-    )
+    chance = f"{_share(float(found.probability))} of the passages at {show(slope, 'V/s', 3)}"
+    text = f"noise switches again in {chance}, allowed are {_share(service.probability)}"
+    text = text if found.inside_range else f"{text}; {found.note}"
+    yield _wide_enough("noise", text, evidence.width, needed)
+
+
+def hum(evidence: Evidence) -> Iterator[Finding]:
+    """Check the width against hum on a passage through the band, on top of the noise.
+
+    Parameters
+    ----------
+    evidence : Evidence
+        The design, with hum and a slope, or a plant that gives one.
+
+    Yields
+    ------
+    Finding
+        Width beyond what hum and noise need; none where no hum is declared.
+    """
+    service = evidence.service
+    if service.hum is None:
+        return
+    amplitude, frequency = service.hum
+    told = f"hum of {show(amplitude, 'V', 3)} at {show(frequency, 'Hz', 3)}"
+    slope = evidence.slope
+    if math.isnan(slope):
+        yield _without_slope("hum", told)
+        return
+    needed = float(hum_width(amplitude, frequency, slope))
+    text = f"{told} takes {show(needed, 'V', 3)} at {show(slope, 'V/s', 3)}"
+    if service.noise is not None:
+        quiet = _for_noise(service, service.noise, slope)
+        text, needed = f"{text}, noise {show(quiet, 'V', 3)}", needed + quiet
+    yield _wide_enough("hum", text, evidence.width, needed)
 
 
 def cycling(evidence: Evidence) -> Iterator[Finding]:
@@ -69,7 +90,11 @@ def cycling(evidence: Evidence) -> Iterator[Finding]:
         Whether it cycles, and one for each declared limit; none without a plant.
     """
     cycle, service = evidence.cycle, evidence.service
+    if service.plant is None:
+        return
     if cycle is None:
+        text = "no cycle: the band lies outside the span of the signal"
+        yield Finding("cycling", "fault", text, remedy="trips within the span")
         return
     status = CycleStatus(int(cycle.status))
     if status is not CycleStatus.CYCLES:
@@ -154,15 +179,37 @@ def load_step(evidence: Evidence) -> Iterator[Finding]:
 
 #: Share of the width by which the trips of a design may differ from those with its load.
 _UNSAID = 0.01
+#: No rarer chance is told: nobody sees it happen.
+_RAREST = 1e-9
 _REMEDIES = {
     CycleStatus.WRONG_WAY: "the other sense, or load=... in the other state",
     CycleStatus.CHATTERS: "a wider band",
 }
 
 
+def _for_noise(service: Service, noise: Noise, slope: float) -> float:
+    return float(width_for(probability=service.probability, noise=noise, slope=slope))
+
+
+def _without_slope(name: str, text: str) -> Finding:
+    remedy = "slope=... in V/s, or plant=..."
+    return Finding(name, "note", f"{text}; the signal's slope is not known", remedy=remedy)
+
+
+def _wide_enough(name: str, text: str, width: float, needed: float) -> Finding:
+    good = width >= needed
+    severity = "pass" if good else "fault" if width < needed / 2 else "warning"
+    remedy = "" if good else f"a width of {show(needed, 'V', 3)}, a filter, or a faster passage"
+    return Finding(name, severity, text, width - needed, "V", remedy)
+
+
+def _share(probability: float) -> str:
+    return f"less than {_RAREST:g}" if probability < _RAREST else show(probability, digits=2)
+
+
 def _starts(cycle: Cycle, most: float | None) -> Iterator[Finding]:
     starts = float(cycle.starts_per_hour)
-    text = f"{starts:.3g} starts per hour, {float(cycle.duty):.0%} on"
+    text = f"{show_own(starts, digits=3)} starts per hour, {show(float(cycle.duty), '%', 3)} on"
     if most is None:
         yield Finding("cycling", "note", f"{text}; what the load stands is not declared",
                       remedy="starts_per_hour=...")  # fmt: skip
@@ -171,7 +218,7 @@ def _starts(cycle: Cycle, most: float | None) -> Iterator[Finding]:
     yield Finding(
         "cycling",
         "pass" if good else "warning",
-        f"{text}, allowed are {most:.3g}",
+        f"{text}, allowed are {show_own(most, digits=3)}",
         most - starts,
         "1/h",
         "" if good else "a wider band: hk.width_window tells how wide",
@@ -194,4 +241,4 @@ def _times(cycle: Cycle, least: dict[str, float | None]) -> Iterator[Finding]:
         )
 
 
-SERVICE_CHECKS: tuple[Check, ...] = (noise, cycling, drive, load_step)
+SERVICE_CHECKS: tuple[Check, ...] = (noise, hum, cycling, drive, load_step)

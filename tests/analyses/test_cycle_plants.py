@@ -24,6 +24,9 @@ MATRICES = {
     "swinging": [[-0.1, -2.0], [1.0, -0.1]],
     "coupled bodies": [[-0.02, 0.01, 0.0], [0.002, -0.013, 0.01], [0.0, 0.3, -0.3]],
     "growing": [[0.1, 1.0], [0.0, -1.0]],
+    "three equal lags": [[-0.5, 0.0, 0.0], [0.5, -0.5, 0.0], [0.0, 0.5, -0.5]],
+    "critically damped": [[0.0, 1.0], [-0.25, -1.0]],
+    "growing without modes": [[0.1, 1.0], [0.0, 0.1]],
 }
 
 
@@ -133,10 +136,27 @@ def test_all_faults_come_together() -> None:
     assert all(name in report for name in ("tau", "sensor_tau", "on_level", "dead_time"))
 
 
+def test_what_is_no_text_is_refused() -> None:
+    with pytest.raises(hk.PlantError) as caught:
+        hk.FirstOrder(600, "40", 10, unit=3, name=None)  # type: ignore[arg-type]
+    assert [fault.problem for fault in caught.value.faults] == [
+        "unit is not text.", "name is not text.",
+    ]  # fmt: skip
+
+
+def test_a_percent_of_the_process_counts_as_one() -> None:
+    humidifier = hk.FirstOrder(600, "80 %", 20, unit="%")
+    assert humidifier == hk.FirstOrder(600, 80, "20", unit="%")
+    cycle = hk.steady_cycle(humidifier, on_at="45 %", off_at=55)
+    assert "45 %" in cycle.to_text().split("lowest")[1].splitlines()[0]
+    run = hk.simulate(humidifier, on_at=45, off_at="55 %", start=50, until=5000)
+    assert "55 %" in run.to_text().split("highest")[1].splitlines()[0]
+
+
 def test_arrays_that_do_not_fit_are_refused() -> None:
-    with pytest.raises(hk.PlantError, match="do not fit") as caught:
+    with pytest.raises(hk.PlantError, match="do not broadcast") as caught:
         hk.FirstOrder([1, 2], [1, 2, 3], 0)
-    assert "tau (2,)" in str(caught.value)
+    assert "tau of shape (2,)" in str(caught.value)
 
 
 @pytest.mark.parametrize(

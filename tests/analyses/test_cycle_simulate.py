@@ -392,7 +392,7 @@ def test_every_fault_is_reported() -> None:
         ({"off_at": 58}, "no hysteresis"),
         ({"state": [20, 20]}, "both given"),
         ({"start": None, "state": [20]}, "2 states"),
-        ({"until": [1, 2, 3], "start": [1, 2]}, "do not fit together"),
+        ({"until": [1, 2, 3], "start": [1, 2]}, "do not broadcast"),
         ({"disturbances": [(5, 1), (5, 1)]}, "disturbance 2 does not come after disturbance 1"),
         ({"disturbances": 7}, "disturbances is not a list"),
         ({"plant": hk.StateSpace([[0, 1], [0, 0]], [[0], [1]], [1, 0], on=[1], off=[0]),
@@ -404,6 +404,22 @@ def test_what_cannot_be_run_is_refused(changes: dict[str, Any], words: str) -> N
     asked = {"plant": heater()[0], "on_at": 58, "off_at": 62, "start": 20, "until": 100} | changes
     with pytest.raises(hk.InputError, match=words):
         hk.simulate(**asked)
+
+
+def test_a_disturbance_may_name_its_unit() -> None:
+    oven = hk.FirstOrder(600, 110, 20, unit="°C")
+    tank = hk.Integrating("2 mm/s", "-1 mm/s", unit="m")
+    for plant, trips, text, size in (
+        (oven, (58, 62), "-5 °C", -5.0),
+        (tank, (1, 2), "-1 mm/s", -1e-3),
+    ):
+        one, other = (
+            hk.simulate(plant, *trips, start=trips[0], until=2000, disturbances=[("100 s", given)])
+            for given in (text, size)
+        )
+        assert np.array_equal(one.times, other.times)
+    with pytest.raises(hk.InputError, match="size of disturbance 1 is not in °C"):
+        hk.simulate(oven, 58, 62, start=60, until=9, disturbances=[(1, "5 V")])
 
 
 def drawn_plant(

@@ -218,6 +218,14 @@ def test_a_supply_that_breaks_down_has_no_trips() -> None:
     assert list(unknown.status) == [Holds.OK, Holds.NO_TRIPS]
 
 
+def test_an_element_below_zero_stops_nothing() -> None:
+    found = hk.load_step(cutout(), 9.0, source_resistance=[35e-3, -1, np.nan], relaxation=0.5)
+    alone = hk.load_step(cutout(), 9.0, source_resistance="35m", relaxation=0.5)
+    assert found.margin[0] == pytest.approx(alone.margin)
+    assert np.isnan(found.margin[1:]).all()
+    assert list(found.status) == [Holds.OK, Holds.NO_TRIPS, Holds.NO_TRIPS]
+
+
 def test_refusals_come_together() -> None:
     with pytest.raises(hk.InputError) as caught:
         hk.load_step(
@@ -229,7 +237,7 @@ def test_refusals_come_together() -> None:
         "design is not a Design.",
         "current is not in A.",
         "supply_resistance is negative.",
-        "source_resistance is not an array of numbers.",
+        "source_resistance is not a number.",
         "there is no output state 'on' here.",
         "there is no ground of a sensor 'earth' here.",
         "these arrays do not broadcast.",

@@ -6,6 +6,7 @@ import pickle
 from math import acos, inf, pi, sqrt
 from typing import Any
 
+import mpmath
 import numpy as np
 import pytest
 from hypothesis import given
@@ -14,7 +15,7 @@ from scipy.integrate import quad
 from scipy.signal import butter, freqs, lfilter, welch
 
 import hystkit as hk
-from hystkit.analyses.noise.spectrum import Table
+from hystkit.analyses.noise.spectrum import Table, TwoPole
 from tests.analyses.noise_process import autocovariance
 
 POLES = st.floats(1e-1, 1e5)
@@ -287,3 +288,24 @@ def test_noise_can_be_compared_and_kept() -> None:
     assert noise != hk.Noise.two_pole(rms=1e-3, f1=1e6, f2=2e3)
     assert pickle.loads(pickle.dumps(noise)) == noise
     assert len({noise, hk.Noise.two_pole(rms="1m", f1="1k", f2="1M")}) == 1
+
+
+@pytest.mark.parametrize("rate", [8.0, 62.0, 64.0, 1e5, 1e9])
+@pytest.mark.parametrize("f2", [1.0, 1.001, 5.0])
+def test_sampled_two_poles_keep_their_digits_at_any_rate(f2: float, rate: float) -> None:
+    """Against the same closed form with 60 digits; equal poles as a limit."""
+    frequency = np.array([0.0, 1e-4, 0.1, 0.5]) * rate
+    found = TwoPole(1.0, 1.0, f2).folded(frequency, rate)
+    with mpmath.workdps(60):
+        w1 = 2 * mpmath.pi / mpmath.mpf(rate)
+        w2 = w1 * (mpmath.mpf(f2) if f2 > 1 else 1 + mpmath.mpf(10) ** -20)
+
+        def shape(w: mpmath.mpf, at: float) -> mpmath.mpf:
+            turn = 2 * mpmath.pi * mpmath.mpf(at) / mpmath.mpf(rate)
+            return mpmath.sinh(w) / (mpmath.cosh(w) - mpmath.cos(turn))
+
+        expected = [
+            float(2 / mpmath.mpf(rate) * (w2 * shape(w1, f) - w1 * shape(w2, f)) / (w2 - w1))
+            for f in frequency
+        ]
+    assert found == pytest.approx(expected, rel=2e-5)

@@ -169,6 +169,12 @@ def test_an_impossible_element_stops_nothing() -> None:
     assert "1 inside the range" in found.to_text()
 
 
+def test_a_band_that_no_noise_crosses_has_no_chance_at_all() -> None:
+    found = hk.chatter(1.0, hk.Noise.two_pole(rms="1m", f1="1k", f2="1M"), "1 V/s")
+    # Not minus zero, which a report would show.
+    assert str(found.probability) == "0.0"
+
+
 @pytest.mark.parametrize(
     ("width", "noise", "slope", "validity"),
     [
@@ -198,8 +204,9 @@ def test_what_lies_outside_says_so(
         ((1, BRICK_WALL.noise, 0), "the signal does not pass the band."),
         ((1, "noise", 1), "noise is not a Noise."),
         (("wide", 1.0, "0 V/s"), "3 faults in this passage:"),
-        (([1, 2], BRICK_WALL.noise, [1, 2, 3]), "these arrays do not fit each other."),
-        ((["a"], BRICK_WALL.noise, 1), "width is not a number or an array of numbers [V]."),
+        (([1, 2], BRICK_WALL.noise, [1, 2, 3]), "these arrays do not broadcast."),
+        ((["a"], BRICK_WALL.noise, 1), "width is not a number."),
+        (([None], BRICK_WALL.noise, 1), "width is not a number or an array of numbers [V]."),
     ],
 )
 def test_refusals(arguments: tuple[object, object, object], text: str) -> None:

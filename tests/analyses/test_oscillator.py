@@ -192,6 +192,19 @@ def test_arrays_are_scalars_side_by_side() -> None:
             assert found.duty[row, column] == pytest.approx(one.duty, rel=1e-12)
 
 
+def test_arrays_of_text() -> None:
+    found = hk.oscillate(pulser(), ["100k", "1M"], "470n")
+    assert found.period == pytest.approx(hk.oscillate(pulser(), [1e5, 1e6], 470e-9).period)
+
+
+def test_what_is_not_finite_does_not_stop_the_others() -> None:
+    found = hk.oscillate(
+        pulser(), [1e6, np.nan, np.inf, 1e6, 1e6], [1e-6, 1e-6, 1e-6, np.nan, np.inf]
+    )
+    assert list(np.isfinite(found.period)) == [True, False, False, False, False]
+    assert list(found.status[3:]) == [Oscillates.NOT_POSITIVE] * 2
+
+
 def test_impossible_elements_do_not_stop_the_others() -> None:
     found = hk.oscillate(pulser(), [1e6, -1.0, 1e6], [1e-6, 1e-6, 0.0])
     expected = [Oscillates.OK, Oscillates.NO_TRIPS, Oscillates.NOT_POSITIVE]
@@ -225,7 +238,8 @@ def test_time_scales_with_the_capacitor_alone(scale: float) -> None:
         (0, "470 nV", ["r is not positive.", "c is not in F."]),
         ([], "470n", ["r is not positive."]),
         ("1M", [0.0, -1e-9], ["c is not positive."]),
-        ("1M", ["470n"], ["c is not positive."]),
+        ("1M", ["470n", "x"], ["c is not a number."]),
+        ([np.nan, np.inf], "470n", ["r is not positive."]),
         (hk.Part("2.5 V"), None, ["r is not a part in Ω.", "c is not a single number."]),
     ],
 )
@@ -236,7 +250,7 @@ def test_refusals(r: Any, c: Any, problems: list[str]) -> None:
 
 
 def test_shapes_and_kinds_are_refused() -> None:
-    with pytest.raises(hk.InputError, match="c does not broadcast"):
+    with pytest.raises(hk.InputError, match="these arrays do not broadcast"):
         hk.oscillate(pulser(), [1e5, 1e6], [1e-6, 1e-6, 1e-6])
     with pytest.raises(hk.InputError, match="design is not a Design"):
         hk.oscillate("pulser", "1M", "1u")  # type: ignore[arg-type]

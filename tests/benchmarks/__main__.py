@@ -6,14 +6,26 @@ import os
 import platform
 import sys
 
-from tests.benchmarks import cycle, forms, imports, noise, sizing, slider, spread
+from tests.benchmarks import (
+    cycle,
+    cycle_panel,
+    forms,
+    imports,
+    noise,
+    noise_panel,
+    sizing,
+    slider,
+    spread,
+    window_panel,
+)
 
 
 def main() -> int:
     machine = f"Python {platform.python_version()}, {os.cpu_count()} cores"
     print(f"{machine}; processor times, medians of one run\n")
     missed = 0
-    for benchmark in (imports, forms, slider, spread, sizing, cycle, noise):
+    panels = (noise_panel, cycle_panel, window_panel)
+    for benchmark in (imports, forms, slider, spread, sizing, cycle, noise, *panels):
         for comparison in benchmark.comparisons():
             print(comparison, flush=True)
             missed += not comparison.passed

@@ -41,14 +41,15 @@ def found(name: str) -> hk.Cycling:
         return hk.cycling(header_tank().with_signal(None), LAGGED)
     if name == "falling":
         return hk.cycling(vent(), hk.TwoLag(900, 60, 15, 40), load="low")
-    if name == "no trips":
-        return hk.cycling(header_tank().with_levels(V_OH=0.05, V_OL=0.05), LAGGED)
+    if name == "out of reach":
+        beyond = vent().with_levels(V_PU=24).with_parts(R_F="10k")
+        return hk.cycling(beyond, LAGGED)
     if name == "narrow":
         return hk.cycling(header_tank().with_parts(R_F="100M"), hk.FirstOrder(600, 2, 0))
     return hk.cycling(header_tank(), PLANTS[name])
 
 
-NAMES = (*PLANTS, "start", "volts", "falling", "no trips", "narrow")
+NAMES = (*PLANTS, "start", "volts", "falling", "out of reach", "narrow")
 
 
 def vent() -> hk.Design:
@@ -179,7 +180,7 @@ def test_a_plant_without_sensor_lag_is_one_line() -> None:
     assert {"process", "sensed"} <= said(cycle(found("lagged")))
 
 
-@pytest.mark.parametrize("name", ["stays on", "stays off", "wrong way", "stays", "no trips"])
+@pytest.mark.parametrize("name", ["stays on", "stays off", "wrong way", "stays", "out of reach"])
 def test_where_it_does_not_cycle_it_says_which_way(name: str) -> None:
     data = found(name)
     picture = cycle(data, width_px=1400)

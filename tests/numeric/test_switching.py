@@ -83,6 +83,12 @@ def test_on_a_trip_point_the_state_stays() -> None:
     ]  # fmt: skip
 
 
+def test_trip_points_as_text() -> None:
+    assert hk.simulate_switch([0.0, 0.6, 0.3], "500 mV", ["0", "200m", 0.4]).tolist() == [
+        False, True, False,
+    ]  # fmt: skip
+
+
 def test_nothing_and_memory() -> None:
     assert hk.simulate_switch(np.empty((3, 0)), 1, 0).shape == (3, 0)
     # A mark holds the place in its block and the state.
@@ -96,7 +102,8 @@ def test_nothing_and_memory() -> None:
         ((0.0, 1.0, 0.0), "samples is a single number."),
         (([0.0, 1.0], [1.0, 1.0, 1.0], 0.0), "the shapes of a simulation do not fit."),
         (([0.0, 1.0], 1.0, 0.0, [True, False]), "the shapes of a simulation do not fit."),
-        (("abc", "1 V", 0.0), "2 faults in this simulation:"),
+        (("abc", "1 A", 0.0), "2 faults in this simulation:"),
+        (([0.0], 1.0, 0.0, "low"), "start is not True or False."),
     ],
 )
 def test_refusals(arguments: Any, text: str) -> None:

@@ -14,7 +14,7 @@ from hystkit.circuit.demo import header_tank
 from hystkit.panels import findings
 from hystkit.review import Finding, Review, review
 from tests.panels.conftest import MakePanel
-from tests.panels.front import design_of, own_circuit, registered, send
+from tests.panels.front import design_of, own_circuit, registered, send, type_in
 
 Make = Callable[..., hk.panels.FindingsPanel]
 
@@ -147,3 +147,41 @@ def test_closing_closes_every_widget() -> None:
     panel.set(safe="on", R_F="120k")
     panel.close()
     assert registered() == before
+
+
+def test_service_is_declared_in_code_and_typed(build: Make) -> None:
+    tank = hk.Integrating(rate_on=2e-3, rate_off=-1e-3, unit="m")
+    noise = hk.Noise.two_pole(rms="1m", f1=10, f2="1k")
+    panel = build(header_tank(), plant=tank, noise=noise, slope="50 mV/s")
+    assert panel.request.slope == 0.05
+    assert panel.reviewed["noise"].severity == "pass"
+    assert panel.reviewed["cycling"].severity == "note"
+    assert "declared in code: noise, plant" in panel.objects.value
+    type_in(panel.service.rows["starts_per_hour"].field, "2")
+    assert panel.request.starts_per_hour == 2
+    assert panel.reviewed["cycling"].severity == "warning"
+    type_in(panel.service.rows["hum"].field, "2 V, 50 Hz")
+    assert panel.reviewed["hum"].severity == "fault"
+    type_in(panel.service.rows["slope"].field, "")
+    assert panel.request.slope is None
+
+
+def test_a_declaration_that_cannot_be_used_leaves_the_last_one(build: Make) -> None:
+    panel = build(header_tank(), slope="50 mV/s", hum=("30 mV", "50 Hz"))
+    before = panel.reviewed
+    type_in(panel.service.rows["slope"].field, "-1")
+    assert panel.request.slope == 0.05
+    assert panel.reviewed == before
+    assert "not above 0" in panel.service.rows["slope"].note.widget.value
+
+
+def test_a_declared_load_follows_the_design(build: Make) -> None:
+    rail = hk.signals.Linear(1.0, span=(0, 5), unit="V", name="rail")
+    design = header_tank().with_signal(rail)
+    step = hk.load_step(design, current=4, source_resistance=0.1, load="low", sigmas=0)
+    panel = build(design, load="low", load_step=step)
+    assert panel.reviewed["load step"].severity == "pass"
+    panel.set(R_F="300k")
+    narrow = hk.load_step(panel.design, current=4, source_resistance=0.1, load="low", sigmas=0)
+    assert panel.reviewed["load step"].margin == pytest.approx(float(narrow.margin))
+    assert panel.reviewed["load step"].severity == "fault"

@@ -88,3 +88,8 @@ def test_what_is_no_window_is_refused(text: str, said: str) -> None:
 def test_what_is_no_temperature_range_is_refused(text: str) -> None:
     with pytest.raises(InputError):
         read_temperatures(text)
+
+
+def test_a_percent_of_a_quantity_counts_as_one() -> None:
+    opening = hk.signals.Linear("50m", span=(0, 100), unit="%", name="opening")
+    assert read_window("40 to 45 %", opening) == pytest.approx((2.0, 2.25))

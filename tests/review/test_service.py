@@ -73,6 +73,23 @@ def test_noise_without_a_slope_is_a_note() -> None:
     assert only("noise", noise=QUIET).severity == "note"
 
 
+@pytest.mark.parametrize(("amplitude", "severity"), [(0.1, "pass"), (0.3, "warning"), (1, "fault")])
+def test_hum_against_the_width(amplitude: float, severity: str) -> None:
+    # On a slow passage hum takes twice its amplitude.
+    found = only("hum", hum=(amplitude, 50), slope=1e-6)
+    assert found.severity == severity
+    assert found.margin == pytest.approx(0.5 - 2 * amplitude, abs=1e-4)
+
+
+def test_hum_comes_on_top_of_noise() -> None:
+    noise = hk.Noise.two_pole(rms="40m", f1=10, f2="1k")
+    alone = only("noise", noise=noise, slope=0.05).margin
+    both = only("hum", noise=noise, slope=0.05, hum=("50 mV", "50 Hz"))
+    assert alone > 0
+    assert both.margin == pytest.approx(alone - hk.hum_width(0.05, 50, 0.05))
+    assert only("hum", hum=("50 mV", "50 Hz")).severity == "note"
+
+
 # -- cycling ---------------------------------------------------------------------------------
 
 
@@ -101,6 +118,13 @@ def test_a_plant_that_does_not_reach_a_trip() -> None:
     found = only("cycling", plant=weak)
     assert found.severity == "fault"
     assert "stays on" in found.text
+
+
+def test_a_band_outside_the_span_of_the_signal() -> None:
+    shallow = stage(signal=hk.signals.Linear(1.0, span=(0, 1), unit="m", name="level"))
+    found = only("cycling", shallow, plant=filling())
+    assert found.severity == "fault"
+    assert "outside the span" in found.text
 
 
 def test_a_load_that_works_the_wrong_way_round() -> None:
@@ -158,8 +182,15 @@ def test_a_load_that_pulls_its_own_signal_back(amperes: float, severity: str) ->
 
 def test_every_declaration_that_cannot_be_used_is_named() -> None:
     with pytest.raises(hk.InputError) as caught:
-        hk.review(stage(), noise=3, plant=filling(np.array([1e-3, 2e-3])), probability=2, slope=-1)
-    for word in ("noise", "one plant", "probability", "slope"):
+        hk.review(
+            stage(),
+            noise=3,
+            hum=(0, 50),
+            plant=filling(np.array([1e-3, 2e-3])),
+            probability=2,
+            slope=-1,
+        )
+    for word in ("noise", "hum", "one plant", "probability", "slope"):
         assert word in str(caught.value)
 
 
@@ -176,3 +207,29 @@ def test_a_load_is_found_again_for_another_design() -> None:
     # A width of 0.25 V, of which the same load takes 0.4 V.
     assert found.severity == "fault"
     assert found.margin == pytest.approx(0.25 - 0.4)
+
+
+def test_a_plant_in_another_unit_is_refused() -> None:
+    kiln = hk.FirstOrder(600, on_level=40, off_level=10, unit="°C")
+    with pytest.raises(hk.InputError, match="different units"):
+        hk.review(stage(), plant=kiln)
+    with pytest.raises(hk.InputError, match="signal in V"):
+        hk.review(stage(signal=None), plant=kiln)
+
+
+def test_numbers_stay_readable() -> None:
+    rare = only("noise", noise=QUIET, slope=1.0)
+    assert "less than 1e-09 of the passages" in rare.text
+    quick = only("cycling", plant=filling(0.9, -0.9), starts_per_hour=20_000)
+    assert "3240 starts per hour, 50 % on, allowed are 20000" in quick.text
+
+
+def test_a_base_that_blocks_sinks_nothing_into_the_output() -> None:
+    """V_L through R_L stands for a base that conducts; low, the base blocks and feeds nothing."""
+    strong = PULLED_UP.with_device(sink_current=6e-3)
+    found = hk.drive(strong, hk.drives.Transistor(beta=100), COIL)
+    sunk = found.output_current("low")
+    # What reaches the output comes through the pull-up, 5 V behind 1 kΩ, and from the feedback.
+    assert 5e-3 < sunk < 5.1e-3
+    output = only("output low", found.design, drive=found)
+    assert output.margin == pytest.approx(6e-3 - sunk)

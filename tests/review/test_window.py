@@ -11,7 +11,7 @@ from hypothesis import given, settings
 from hypothesis import strategies as st
 
 import hystkit as hk
-from hystkit.review.window.search import Requirement, limiting_widths
+from hystkit.review.window.search import Requirement, first_widths, limiting_widths
 
 TEMPERATURE = hk.signals.Linear("50m", span=(-10, 30), unit="°C", name="temperature")
 
@@ -251,7 +251,7 @@ def test_openings_of_random_windows(asked: dict[str, Any]) -> None:
         assert found.openings == ()
         return
     for opening in found.openings:
-        then = hk.width_window(tank_stage(), plant=TANK, **{**asked, **opening.changes})
+        then = hk.width_window(tank_stage(), **{"plant": TANK, **asked, **opening.changes})
         assert then.feasible is not None
         assert then.feasible == pytest.approx(opening.feasible)
         assert opening.text
@@ -272,13 +272,15 @@ def test_views_say_what_binds() -> None:
     assert "would open it" in text
 
 
+WIDTHS = first_widths(1.0)
+
 # -- the search ------------------------------------------------------------------------------
 
 
 @given(st.floats(1e-5, 0.99), st.booleans())
 def test_limiting_widths_are_found_closely(limit: float, least: bool) -> None:
     requirement: Requirement[Any] = Requirement(lambda w: (w >= limit) == least, least)
-    (found,) = limiting_widths(lambda w: w, [requirement], 1.0)
+    (found,) = limiting_widths(lambda w: w, [requirement], (WIDTHS, WIDTHS))
     assert found == pytest.approx(limit, rel=1e-5)
     assert (found >= limit) == least
 
@@ -291,7 +293,43 @@ def test_limiting_widths_at_the_ends() -> None:
         return ~never(widths)
 
     tries = [Requirement(meets, least) for meets in (never, always) for least in (True, False)]
-    assert limiting_widths(lambda w: w, tries, 1.0) == [math.inf, 0.0, 0.0, math.inf]
+    assert limiting_widths(lambda w: w, tries, (WIDTHS, WIDTHS)) == [math.inf, 0.0, 0.0, math.inf]
+
+
+def test_a_plant_that_does_not_cycle_tells_no_slope() -> None:
+    turned = hk.Integrating(-1e-3, 2e-3, unit="m")
+    window = hk.width_window(tank_stage(), plant=turned, noise=NOISE, hum=("30m", 100), swing=1)
+    assert window.feasible is None
+    assert math.isinf(window["noise"].width)
+    assert math.isinf(window["all disturbances"].width)
+    assert window.openings == ()
+
+
+def test_noise_that_asks_for_more_than_the_plant_reaches() -> None:
+    slow = hk.FirstOrder(3600, on_level=2.8, off_level=2.2, unit="m")
+    loud = hk.Noise.two_pole(rms="60m", f1=10, f2="1k")
+    window = hk.width_window(tank_stage(), plant=slow, noise=loud)
+    assert math.isinf(window["noise"].width)
+    assert any("noise of at most" in opening.text for opening in window.openings)
+
+
+def test_a_floor_that_any_width_meets_does_not_bind() -> None:
+    turned = hk.width_window(tank_stage(), plant=hk.Integrating(-1e-3, 2e-3), starts_per_hour=20)
+    assert turned.floor is None
+    assert "bound by reach" in turned.to_text()
+
+
+def test_quantities_are_shown_in_their_own_unit() -> None:
+    """A percent counts as 1, and a large number has no exponent."""
+    opening = hk.signals.Linear("50m", span=(0, 100), unit="%", name="opening")
+    window = hk.width_window(tank_stage(signal=opening), accuracy="12.5 %", uncertainty=0.5)
+    assert window["accuracy"].width == pytest.approx(24.0)
+    assert "24 %" in window.to_text()
+    assert "± 12.5 % of 50 %" in window["accuracy"].text
+    pressure = hk.signals.Linear("20u", span=(0, 250e3), unit="Pa", name="vessel")
+    text = hk.width_window(tank_stage(signal=pressure), accuracy="20 kPa").to_text()
+    assert "40000 Pa" in text
+    assert "e+" not in text
 
 
 # -- refusals --------------------------------------------------------------------------------
@@ -304,6 +342,12 @@ def test_everything_that_is_missing_or_wrong_is_named() -> None:
         )
     for word in ("no plant", "how fast", "hum", "probability", "accuracy"):
         assert word in str(caught.value)
+
+
+def test_a_band_outside_the_span_of_its_signal_is_refused() -> None:
+    shallow = hk.signals.Linear(1.0, span=(0, 1), unit="m", name="level")
+    with pytest.raises(hk.DesignError, match="outside the signal's span"):
+        hk.width_window(tank_stage(signal=shallow))
 
 
 def test_units_have_to_agree() -> None:

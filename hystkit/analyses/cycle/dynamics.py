@@ -307,7 +307,7 @@ def _cascade(a: Array, dt: Array) -> tuple[Array, Array]:
 
 
 def _drift(a: Array, dt: Array) -> tuple[Array, Array]:
-    """The exponential series, which ends after two terms where A A = 0."""
+    """Return the exponential series, which ends after two terms where A A = 0."""
     t, unit = dt[..., None, None], np.eye(a.shape[-1])
     return unit + a * t, unit * t + a * (t * t / 2)
 

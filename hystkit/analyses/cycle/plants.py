@@ -15,7 +15,7 @@ from hystkit.analyses.cycle.dynamics import Dynamics
 from hystkit.analyses.cycle.numbers import Given, Numbers, read_dead_time, read_numbers
 from hystkit.base.errors import Fault, PlantError
 from hystkit.circuit.arrays import together
-from hystkit.circuit.reading import set_frozen
+from hystkit.circuit.reading import is_kind, set_frozen, wrong_kind
 
 Array = NDArray[np.float64]
 
@@ -45,6 +45,11 @@ class Plant(ABC):
     @abstractmethod
     def dynamics(self) -> Dynamics:
         """The plant in the form that all plants share."""
+
+    @property
+    def disturbance_unit(self) -> str:
+        """Unit of a disturbance, which shifts the levels at which a lag settles."""
+        return self.unit
 
     @property
     def shape(self) -> tuple[int, ...]:
@@ -89,8 +94,10 @@ class Plant(ABC):
     def _describe(self, faults: list[Fault], dead_time: Any, unit: str, name: str) -> None:
         """Set what all plants share."""
         set_frozen(self, "dead_time", read_dead_time(faults, dead_time))
-        set_frozen(self, "unit", unit)
-        set_frozen(self, "name", name)
+        for field, text in (("unit", unit), ("name", name)):
+            if not is_kind(text, str):
+                faults.append(wrong_kind(field, text, "text", f'{field}="{text}"'))
+            set_frozen(self, field, str(text))
 
     def _refuse(self, faults: list[Fault], **numbers: Any) -> None:
         """Raise for the faults, those of shapes that do not fit included."""
@@ -152,8 +159,8 @@ class FirstOrder(Plant):
         faults: list[Fault] = []
         self._describe(faults, dead_time, unit, name)
         set_frozen(self, "tau", read_numbers(faults, "tau", tau, "s", "> 0"))
-        set_frozen(self, "on_level", read_numbers(faults, "on_level", on_level, unit))
-        set_frozen(self, "off_level", read_numbers(faults, "off_level", off_level, unit))
+        set_frozen(self, "on_level", read_numbers(faults, "on_level", on_level, self.unit))
+        set_frozen(self, "off_level", read_numbers(faults, "off_level", off_level, self.unit))
         self._refuse(faults, tau=self.tau, on_level=self.on_level, off_level=self.off_level)
 
     @cached_property
@@ -226,8 +233,8 @@ class TwoLag(Plant):
         self._describe(faults, dead_time, unit, name)
         set_frozen(self, "tau", read_numbers(faults, "tau", tau, "s", "> 0"))
         set_frozen(self, "sensor_tau", read_numbers(faults, "sensor_tau", sensor_tau, "s", "> 0"))
-        set_frozen(self, "on_level", read_numbers(faults, "on_level", on_level, unit))
-        set_frozen(self, "off_level", read_numbers(faults, "off_level", off_level, unit))
+        set_frozen(self, "on_level", read_numbers(faults, "on_level", on_level, self.unit))
+        set_frozen(self, "off_level", read_numbers(faults, "off_level", off_level, self.unit))
         self._refuse(
             faults,
             tau=self.tau,
@@ -298,10 +305,15 @@ class Integrating(Plant):
     ) -> None:
         faults: list[Fault] = []
         self._describe(faults, dead_time, unit, name)
-        per_second = f"{unit}/s" if unit else ""
+        per_second = self.disturbance_unit
         set_frozen(self, "rate_on", read_numbers(faults, "rate_on", rate_on, per_second))
         set_frozen(self, "rate_off", read_numbers(faults, "rate_off", rate_off, per_second))
         self._refuse(faults, rate_on=self.rate_on, rate_off=self.rate_off)
+
+    @property
+    def disturbance_unit(self) -> str:
+        """Unit of a disturbance, which adds to both rates."""
+        return f"{self.unit}/s" if self.unit else ""
 
     @cached_property
     def dynamics(self) -> Dynamics:
@@ -397,6 +409,11 @@ class StateSpace(Plant):
         if not faults:
             faults += self._misshapen()
         self._refuse(faults, **({} if faults else self._leading()))
+
+    @property
+    def disturbance_unit(self) -> str:
+        """No unit: a disturbance is a multiple of a column."""
+        return ""
 
     @cached_property
     def dynamics(self) -> Dynamics:

@@ -155,7 +155,7 @@ def read_request(
         name: read_numbers(faults, name, value, unit, "or NaN") for name, value in given.items()
     }
     numbers |= {n: read_numbers(faults, n, value, "s", _RULES[n]) for n, value in times.items()}
-    steps = tuple(_read_steps(faults, disturbances))
+    steps = tuple(_read_steps(faults, disturbances, plant.disturbance_unit if known else ""))
     on = _read_on(faults, start_on)
     faults += _start_faults(values["start"], state)
     states = None if state is None else read_numbers(faults, "state", state)
@@ -248,7 +248,9 @@ def _longer(rows: Array) -> Array:
     return np.concatenate([rows, np.zeros((*rows.shape[:-1], 1))], axis=-1)
 
 
-def _read_steps(faults: list[Fault], disturbances: Any) -> Iterator[tuple[Numbers, Numbers]]:
+def _read_steps(
+    faults: list[Fault], disturbances: Any, unit: str
+) -> Iterator[tuple[Numbers, Numbers]]:
     pairs = members(disturbances)
     if not pairs and not is_kind(disturbances, (tuple, list)):
         wanted = "a list of pairs (time, size)"
@@ -261,7 +263,7 @@ def _read_steps(faults: list[Fault], disturbances: Any) -> Iterator[tuple[Number
         time, size = pair
         yield (
             read_numbers(faults, f"time of disturbance {place}", time, "s", ">= 0"),
-            read_numbers(faults, f"size of disturbance {place}", size),
+            read_numbers(faults, f"size of disturbance {place}", size, unit),
         )
 
 

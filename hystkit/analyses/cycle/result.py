@@ -7,15 +7,13 @@ from dataclasses import dataclass
 from typing import Any
 
 import numpy as np
-from numpy.typing import NDArray
 
-from hystkit.analyses.cycle.numbers import Given, read_numbers
+from hystkit.analyses.cycle.numbers import Given
 from hystkit.analyses.cycle.status import CycleStatus
-from hystkit.base.errors import Fault, InputError
 from hystkit.base.fields import Field, Viewed
+from hystkit.numeric.contacts import contact_life
+from hystkit.numeric.measurand import shown_span, span_of
 
-#: Hours of a year [h].
-_YEAR = 8760.0
 _HOUR = 3600.0
 
 
@@ -99,7 +97,7 @@ class Cycle(Viewed):
         Returns
         -------
         float or ndarray
-            Years of 8760 h.
+            Years of 8760 h; NaN where there is no cycle.
 
         Raises
         ------
@@ -118,11 +116,7 @@ class Cycle(Viewed):
         >>> print(f"{cycle.contact_life(100e3):.2f} years")
         0.29 years
         """
-        faults: list[Fault] = []
-        rated = read_numbers(faults, "operations", operations, "", "> 0")
-        if faults:
-            raise InputError.of("the contact", faults)
-        return rated / (_YEAR * self.starts_per_hour)
+        return contact_life(operations, self.starts_per_hour)
 
     @property
     def _title(self) -> str:
@@ -132,20 +126,22 @@ class Cycle(Viewed):
         rows = [Field("behaviour", self._summary())]
         if not np.any(self.ok):
             return rows
-        unit = self.unit
         values = (
             ("on time", self.on_time, "s", "t_{\\mathrm{on}}"),
             ("off time", self.off_time, "s", "t_{\\mathrm{off}}"),
             ("period", self.period, "s", "T"),
             ("duty", self.duty, "%", ""),
             ("starts per hour", self.starts_per_hour, "1/h", ""),
-            ("lowest", self.low, unit, ""),
-            ("highest", self.high, unit, ""),
-            ("mean", self.mean, unit, ""),
-            ("lowest sensed", self.sensed_low, unit, ""),
-            ("highest sensed", self.sensed_high, unit, ""),
         )
-        return rows + [Field(label, _range(v), u, latex=latex) for label, v, u, latex in values]
+        rows += [Field(label, span_of(v), unit, latex=latex) for label, v, unit, latex in values]
+        levels = {
+            "lowest": self.low,
+            "highest": self.high,
+            "mean": self.mean,
+            "lowest sensed": self.sensed_low,
+            "highest sensed": self.sensed_high,
+        }
+        return rows + [Field(label, shown_span(v, self.unit)) for label, v in levels.items()]
 
     def _summary(self) -> str:
         if np.ndim(self.status) == 0:
@@ -153,9 +149,3 @@ class Cycle(Viewed):
         codes, counts = np.unique(self.status, return_counts=True)
         parts = zip(codes, counts, strict=True)
         return "; ".join(f"{n} {CycleStatus(int(code)).message}" for code, n in parts)
-
-
-def _range(value: NDArray[Any]) -> float | tuple[float, float]:
-    """Return a number, or the lowest and the highest of several."""
-    low, high = float(np.nanmin(value)), float(np.nanmax(value))
-    return low if low == high else (low, high)

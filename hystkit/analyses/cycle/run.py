@@ -17,6 +17,7 @@ from hystkit.analyses.cycle.turns import turns
 from hystkit.base.errors import Fault, InputError
 from hystkit.base.fields import Field, Viewed
 from hystkit.circuit.reading import wrong_kind
+from hystkit.numeric.measurand import shown_span, span_of
 
 Array = NDArray[np.float64]
 
@@ -247,24 +248,17 @@ class Run(Viewed):
         return f"Run of {self.plant.name or 'the plant'}"
 
     def _fields(self) -> Sequence[Field]:
+        unit = self.plant.unit
         last = (("on time", self.on_times), ("off time", self.off_times))
         return [
             Field("behaviour", self.message),
-            Field("starts", _span(np.isfinite(self.starts).sum(axis=-1))),
-            *(Field(label, _span(_last(phases, 0)), "s", "last one") for label, phases in last),
-            Field("duty", _span(self.duty), "%", "last cycle"),
-            Field("lowest", self._plain(self.low), "", "last low of the process value"),
-            Field("highest", self._plain(self.high), "", "last high of the process value"),
+            Field("starts", span_of(np.isfinite(self.starts).sum(axis=-1))),
+            *(Field(label, span_of(_last(phases, 0)), "s", "last one") for label, phases in last),
+            Field("duty", span_of(self.duty), "%", "last cycle"),
+            Field("lowest", shown_span(self.low, unit), "", "last low of the process value"),
+            Field("highest", shown_span(self.high, unit), "", "last high of the process value"),
             Field("settled", bool(np.all(self.settled)), "", "last two cycles alike"),
         ]
-
-    def _plain(self, values: Any) -> str | None:
-        """Write values in the unit itself: a level in m does not turn into mm."""
-        span = _span(values)
-        ends = span if isinstance(span, tuple) else (span,)
-        if np.isnan(ends).any():
-            return None
-        return f"{' to '.join(f'{end:.5g}' for end in ends)} {self.plant.unit}".rstrip()
 
 
 def _read_times(at: Any) -> int | Array:
@@ -318,13 +312,3 @@ def _last(values: Array, back: int) -> Any:
         return np.full(values.shape[:-1], np.nan)[()]
     taken = np.take_along_axis(values, np.maximum(place, 0)[..., None], axis=-1)[..., 0]
     return np.where(place >= 0, taken, np.nan)[()]
-
-
-def _span(values: Any) -> float | tuple[float, float]:
-    """Give a scalar as it is, of an array the lowest and the highest finite element."""
-    finite = np.asarray(values, dtype=float)
-    finite = finite[np.isfinite(finite)]
-    if not finite.size:
-        return float("nan")
-    low, high = float(finite.min()), float(finite.max())
-    return low if low == high else (low, high)

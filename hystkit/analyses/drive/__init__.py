@@ -1,6 +1,5 @@
 """Drive: what the output of a stage switches, and what that does to the stage."""
 
-from hystkit.analyses.drive.contacts import contact_life
 from hystkit.analyses.drive.drive import drive
 from hystkit.analyses.drive.led import LedDrive
 from hystkit.analyses.drive.result import Drive
@@ -11,6 +10,5 @@ __all__ = [
     "LedDrive",
     "MosfetDrive",
     "TransistorDrive",
-    "contact_life",
     "drive",
 ]

@@ -133,6 +133,22 @@ class Drive(Viewed):
         """The same without the load [A]."""
         return float(self._before(self.loaded.state).supply_current)
 
+    def output_current(self, state: str) -> float:
+        """Return the highest current that the output drives over all tolerances.
+
+        Parameters
+        ----------
+        state : {"high", "low"}
+            Output state.
+
+        Returns
+        -------
+        float
+            Sourced when high, sunk when low [A].
+        """
+        sign = 1.0 if state == "high" else -1.0
+        return float(np.max(sign * self.loaded.corners(state)[1].output_current))
+
     @property
     def warnings(self) -> tuple[str, ...]:
         """What is wrong or marginal with these values, in words with numbers."""
@@ -174,11 +190,11 @@ class Drive(Viewed):
 
     def _current_warnings(self) -> Iterator[str]:
         device = self.given.device
-        for state, sign, verb, most in (
-            ("high", 1, "source", device.source_current),
-            ("low", -1, "sink", device.sink_current),
+        for state, verb, most in (
+            ("high", "source", device.source_current),
+            ("low", "sink", device.sink_current),
         ):
-            current = float(np.max(sign * self.loaded.corners(state)[1].output_current))
+            current = self.output_current(state)
             if most is not None and current > most:
                 yield (
                     f"the output has to {verb} {show(current, 'A')}, allowed are {show(most, 'A')}"

@@ -19,7 +19,7 @@ from hystkit.base.frozen import Named
 from hystkit.base.quantity import show
 from hystkit.circuit.design import Design
 from hystkit.circuit.reading import Quantity
-from hystkit.numeric.measurand import Edges, load_edges, span_of
+from hystkit.numeric.measurand import Edges, load_edges, shown_span, span_of
 from hystkit.numeric.status import Status
 from hystkit.numeric.trips import TripPoints
 
@@ -71,15 +71,9 @@ class StepMeasurand(Viewed):
         rows = {"load on at": self.on_at, "load off at": self.off_at, "margin": self.margin}
         notes = {"load off at": "without the load's effect"}
         return [
-            Field(f"{self.name}, {label}", self._plain(value), note=notes.get(label, ""))
+            Field(f"{self.name}, {label}", shown_span(value, self.unit), note=notes.get(label, ""))
             for label, value in rows.items()
         ]
-
-    def _plain(self, values: Any) -> str:
-        """Write values in the unit itself, as `Measurand` does: a level in m stays in m."""
-        found = span_of(values)
-        ends = found if isinstance(found, tuple) else (found,)
-        return f"{' to '.join(f'{end:.4g}' for end in ends)} {self.unit}".rstrip()
 
 
 @dataclass(frozen=True)
@@ -202,7 +196,10 @@ class LoadStep(Viewed):
             return status.message
         if status is Holds.OK and self.harmless:
             return "holds: the load does not drive the stage back"
-        return f"{status.message}, {show(self.margin, 'V')} left of {show(self.width, 'V')}"
+        width = show(self.width, "V")
+        if self.margin > 0:
+            return f"{status.message}, {show(self.margin, 'V')} left of {width}"
+        return f"{status.message}; {show(self.width - self.margin, 'V')} of {width} are taken"
 
     @property
     def measurand(self) -> StepMeasurand | None:

@@ -4,7 +4,6 @@ from __future__ import annotations
 
 from typing import Any
 
-import numpy as np
 from numpy.typing import ArrayLike
 
 from hystkit.analyses.load_step.effect import SENSOR_GROUNDS, effect_of
@@ -12,7 +11,7 @@ from hystkit.analyses.load_step.result import LoadStep
 from hystkit.base.errors import Fault, InputError
 from hystkit.base.frozen import Named
 from hystkit.base.nearest import unknown_name_fault
-from hystkit.circuit.arrays import read_array, together
+from hystkit.circuit.arrays import read_array, read_positives, together
 from hystkit.circuit.design import Design
 from hystkit.circuit.reading import is_kind, wrong_kind
 from hystkit.numeric.measurand import LOADS
@@ -135,7 +134,13 @@ def _checked(design: Any, given: dict[str, Any], load: Any, sensor_ground: Any) 
     if not is_kind(design, Design):
         remedy = "hk.load_step(hk.Design(stage, parts, supply=5.0), current=9.0)"
         faults.append(wrong_kind("design", design, "a Design", remedy))
-    known = {name: _number(faults, name, value) for name, value in given.items()}
+    known: dict[str, Any] = {}
+    for name, value in given.items():
+        if name in _SIGNED:
+            found = read_array(faults, name, value, _UNITS[name])
+        else:
+            found = read_positives(faults, name, value, _UNITS[name], zero=True)
+        known[name] = found[()]
     if load not in LOADS:
         faults.append(unknown_name_fault("output state", str(load), LOADS))
     if sensor_ground not in SENSOR_GROUNDS:
@@ -144,19 +149,3 @@ def _checked(design: Any, given: dict[str, Any], load: Any, sensor_ground: Any) 
     if faults:
         raise InputError.of("this load step", faults)
     return known
-
-
-def _number(faults: list[Fault], name: str, value: Any) -> Any:
-    """Read a number, a text or an array of numbers; NaN where that is a fault."""
-    number: Any = read_array(faults, name, value, _UNITS[name])[()]
-    # What could not be read is NaN here, and a fault already.
-    if name not in _SIGNED and np.any(np.less(number, 0)):
-        faults.append(
-            Fault(
-                f"{name} is negative.",
-                asked=f"{name} = {value!r}",
-                rule=f"{name} >= 0",
-                remedy="its magnitude; the sign of current tells load from charger",
-            )
-        )
-    return number

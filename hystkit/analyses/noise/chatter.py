@@ -17,6 +17,7 @@ from hystkit.base.errors import Fault
 from hystkit.base.fields import Field, Viewed
 from hystkit.base.quantity import show
 from hystkit.circuit.arrays import Floats, Values, read_array, read_positives
+from hystkit.numeric.measurand import span_of
 
 #: Where the formulas were compared with simulations: width in units of the rms, ...
 WIDTHS = (1.0, 6.0)
@@ -128,10 +129,10 @@ class Chatter(Viewed):
         if np.ndim(self.probability):
             inside = int(np.count_nonzero(self.inside_range))
             return [
-                _range("width", self.width, "V"),
-                _range("slope", self.slope, "V/s"),
-                _range("probability of more than one transition", self.probability),
-                _range("extra cycles", self.extra_cycles),
+                Field("width", span_of(self.width), "V"),
+                Field("slope", span_of(self.slope), "V/s"),
+                Field("probability of more than one transition", span_of(self.probability)),
+                Field("extra cycles", span_of(self.extra_cycles)),
                 Field("elements", f"{np.size(self.probability)}", "", f"{inside} {_INSIDE}"),
             ]
         return [
@@ -269,11 +270,3 @@ def _status(
     status[widths < WIDTHS[0] * (1 - _ROUNDING)] = Validity.NARROW
     status[np.isnan(probability)] = Validity.IMPOSSIBLE
     return status
-
-
-def _range(label: str, values: Any, unit: str = "") -> Field:
-    """Show the least and the largest of an array."""
-    known = np.asarray(values)[np.isfinite(values)]
-    if not known.size:
-        return Field(label, None, unit)
-    return Field(label, (float(known.min()), float(known.max())), unit)

@@ -18,8 +18,8 @@ from hystkit.circuit.reading import wrong_kind
 # No noise crosses a wider band in the age of anything, in units of the rms.
 _WIDEST = 24.0
 _POINTS = 17
-# The interval shrinks 16 times in each.
-_ROUNDS = 8
+# The interval shrinks 16 times in each, to about a millionth of the rms.
+_ROUNDS = 6
 
 
 def width_for(

@@ -97,7 +97,7 @@ def passage(width: Floats, crossings: Floats, relaxations: Floats) -> Passage:
     places = (mean + waited + reach) / step
     # Summed from the end, where there is next to nothing.
     left = _between(_running(rates[2][:, ::-1])[:, ::-1], places)
-    probability = -(share * np.expm1(-left)).sum(-1)
+    probability = (share * -np.expm1(-left)).sum(-1)
     arrived = _between(tripped, (nodes - waited + reach) / step)
     cycles = _cycles(arrived, rates[1], rates[2])
     shape = probability.shape

@@ -13,6 +13,8 @@ from numpy.typing import NDArray
 Floats = NDArray[np.float64]
 # Images of a sampled table that are folded back one by one.
 _IMAGES = 200
+# Radians per sample of a pole up to which its power series is used.
+_SLOW = 0.5
 
 
 class Spectrum(Protocol):
@@ -220,13 +222,9 @@ class TwoPole:
         ndarray
             In V²/Hz.
         """
-        # Equal poles are a limit of different ones; this far apart, both errors are small.
-        w1, w2 = (2 * math.pi * f / rate for f in (self.f1, self.f2))
-        w2 = max(w2, w1 * (1 + 1e-5))
-        cosine = np.cos(2 * np.pi * frequency / rate)
-        slow, fast = (-math.expm1(-2 * w) / (1 - 2 * math.exp(-w) * cosine + math.exp(-2 * w))
-                      for w in (w1, w2))  # fmt: skip
-        power = (w2 * slow - w1 * fast) / (w2 - w1)
+        w1, w2 = sorted(2 * math.pi * f / rate for f in (self.f1, self.f2))
+        sine = np.sin(np.pi * frequency / rate) ** 2
+        power = _slow_poles(w1, w2, sine) if w2 < _SLOW else _fast_poles(w1, w2, sine)
         return np.asarray(2 * self.rms**2 / rate * np.maximum(power, 0.0))
 
     def scaled(self, factor: float) -> TwoPole:
@@ -243,6 +241,34 @@ class TwoPole:
             With the same poles.
         """
         return TwoPole(factor * self.rms, self.f1, self.f2)
+
+
+def _slow_poles(w1: float, w2: float, sine: Floats) -> Floats:
+    """Two poles far below the sample rate, where the two terms of `_fast_poles` nearly cancel.
+
+    With D = sinh(w/2)^2 + sin^2 each is sinh(w) / (2 D); their difference is taken by terms in
+    w2 - w1, which divides out, so that equal poles need nothing of their own.
+    """
+    low, high = (math.sinh(w / 2) ** 2 + sine for w in (w1, w2))
+    half = (w2 - w1) / 2
+    rise = math.sinh((w1 + w2) / 2) / 2 * (math.sinh(half) / half if half else 1.0)
+    # Divided difference of sinh(w) / (2 w), by its power series.
+    bend = sum(
+        math.fsum(w1**j * w2 ** (n - 1 - j) for j in range(n)) / (2 * math.factorial(n + 1))
+        for n in range(2, 16, 2)
+    )
+    level = math.sinh(w1) / (2 * w1)
+    return np.asarray(w1 * w2 * (level * rise - bend * low) / (low * high))
+
+
+def _fast_poles(w1: float, w2: float, sine: Floats) -> Floats:
+    """Two poles not far below the sample rate, or above it."""
+    # Equal poles are a limit of different ones; this far apart, both errors are small.
+    w2 = max(w2, w1 * (1 + 1e-5))
+    slow, fast = (
+        -math.expm1(-2 * w) / (math.expm1(-w) ** 2 + 4 * math.exp(-w) * sine) for w in (w1, w2)
+    )
+    return np.asarray((w2 * slow - w1 * fast) / (w2 - w1))
 
 
 def realise(spectrum: Spectrum, samples: int, rate: float, seed: int) -> Floats:

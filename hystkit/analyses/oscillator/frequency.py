@@ -20,6 +20,7 @@ from hystkit.circuit.design import Design
 from hystkit.circuit.parts import Part
 from hystkit.numeric.compile import kernel
 from hystkit.numeric.fractions import gains
+from hystkit.numeric.measurand import span_of
 from hystkit.numeric.sampling import Plan, blocks
 from hystkit.numeric.trips import overridden
 from hystkit.numeric.uncertain import Box
@@ -33,6 +34,7 @@ KINDS = {"period": "s", "frequency": "Hz", "high_time": "s", "low_time": "s", "d
 MEASURE = "normalised squared sensitivities"
 #: More uncertain quantities than this would need too many corners.
 MAX_QUANTITIES = 16
+_LABELS = {"high_time": "output high", "low_time": "output low"}
 # Step of a derivative along the imaginary axis, where no difference loses digits.
 _STEP = 1e-30
 
@@ -196,7 +198,10 @@ class FrequencySpread(Viewed):
     def _fields(self) -> Sequence[Field]:
         rows = [Field("oscillates", "not in every corner of the tolerances")]
         rows = [] if self.oscillates else rows
-        rows += [Field(k, self.extremes[k], unit, "attained") for k, unit in KINDS.items()]
+        rows += [
+            Field(_LABELS.get(k, k), span_of(self.extremes[k]), unit, "attained")
+            for k, unit in KINDS.items()
+        ]
         rows += [Field(f"{k} ±", self.rss[k], KINDS[k], f"{self.plan.sigmas:g} sigma, first order")
                  for k in ("period", "frequency")]  # fmt: skip
         ranked = [

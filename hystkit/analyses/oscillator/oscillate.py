@@ -15,10 +15,10 @@ from hystkit.analyses.oscillator.swing import (
     with_timing_resistor,
 )
 from hystkit.base.errors import Fault, InputError
-from hystkit.base.quantity import read
+from hystkit.circuit.arrays import read_array, together
 from hystkit.circuit.design import Design
 from hystkit.circuit.parts import Part
-from hystkit.circuit.reading import collect, is_kind, wrong_kind
+from hystkit.circuit.reading import is_kind, wrong_kind
 from hystkit.numeric.status import Status
 from hystkit.numeric.trips import overridden, trip_points
 
@@ -94,7 +94,8 @@ def oscillate(
     values, delay = overridden(timed, given), timed.device.delay
     found = swing(timed.stage, values, (trips.upper, trips.lower), farads, delay)
     status = oscillates(timed.stage, found, trips.status == Status.OK)
-    status = np.where(np.greater(farads, 0), status, np.int8(Oscillates.NOT_POSITIVE))
+    possible = np.greater(farads, 0) & np.isfinite(farads)
+    status = np.where(possible, status, np.int8(Oscillates.NOT_POSITIVE))
     peak, valley, up, down = (
         np.where(status == Oscillates.OK, one, np.nan)[()]
         for one in (found.peak, found.valley, found.up_time, found.down_time)
@@ -128,10 +129,14 @@ def _checked(design: Any, r: Any, c: Any) -> tuple[Part, Part, Any, Any]:
     if faults:
         raise InputError.of("this oscillator", faults)
     resistor, capacitor = (
-        given if isinstance(given, Part) else Part(float(np.max(numbers)))
+        given if isinstance(given, Part) else Part(_largest(numbers))
         for given, numbers in ((r, ohms), (c, farads))
     )
     return resistor, capacitor, ohms, farads
+
+
+def _largest(numbers: Any) -> float:
+    return float(np.max(numbers, initial=0.0, where=np.isfinite(numbers)))
 
 
 def _values(faults: list[Fault], name: str, given: Any, unit: str) -> Any:
@@ -141,21 +146,15 @@ def _values(faults: list[Fault], name: str, given: Any, unit: str) -> Any:
     if isinstance(given, Part) and given.unit not in ("", unit):
         faults.append(wrong_kind(name, given, f"a part in {unit}", remedy))
         return np.nan
-    if np.ndim(value) == 0:
-        number: Any = collect(faults, lambda: read(value, unit=unit, name=name))
-        # What could not be read is NaN here, and a fault already.
-        fits = not number <= 0
-    else:
-        numbers = np.asarray(value)
-        plain = numbers.dtype.kind in "iuf"
-        number = numbers.astype(float) if plain else np.nan
-        fits = plain and bool(np.any(numbers > 0)) and bool(np.all(np.isfinite(numbers)))
-    if not fits:
+    number: Any = read_array(faults, name, value, unit)[()]
+    # A single one that could not be read is NaN here, and a fault already.
+    unread = np.ndim(number) == 0 and np.isnan(number)
+    if not unread and not np.any((number > 0) & np.isfinite(number)):
         faults.append(
             Fault(
                 f"{name} is not positive.",
                 asked=f"{name} = {value!r}",
-                rule=f"{name} > 0 [{unit}]; of an array of finite numbers, one at least",
+                rule=f"{name} > 0 [{unit}], finite; of an array, one at least",
                 remedy=remedy,
             )
         )
@@ -163,12 +162,7 @@ def _values(faults: list[Fault], name: str, given: Any, unit: str) -> Any:
 
 
 def _check_shapes(status: Any, farads: Any) -> None:
-    try:
-        np.broadcast_shapes(np.shape(status), np.shape(farads))
-    except ValueError:
-        raise InputError(
-            "c does not broadcast with the other arrays.",
-            have=f"c of shape {np.shape(farads)}, the others of shape {np.shape(status)}",
-            rule="shapes are equal, or 1, axis by axis from the last",
-            remedy="arrays of one length, or an axis of its own for each: r[:, None]",
-        ) from None
+    faults: list[Fault] = []
+    together(faults, {"r or an override": status, "c": farads})
+    if faults:
+        raise InputError.of("this oscillator", faults)

@@ -155,6 +155,10 @@ class Oscillation(Viewed):
         plan = (samples, seed, distribution, sigmas)
         return frequency_spread(self.design, self.capacitor, temperature, *plan)
 
+    @property
+    def _title(self) -> str:
+        return f"Oscillation of {self.design.name or 'the stage'}"
+
     def _fields(self) -> Sequence[Field]:
         rows = [
             Field("period", span_of(self.period), "s"),

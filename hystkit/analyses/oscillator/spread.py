@@ -2,18 +2,12 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterator
-from math import isfinite
-from numbers import Integral, Real
-from typing import Any
-
 from hystkit.analyses.oscillator.frequency import CAPACITOR, FrequencySpread
-from hystkit.base.errors import DesignError, Fault, InputError
+from hystkit.base.errors import DesignError, InputError
 from hystkit.base.frozen import Named
-from hystkit.base.nearest import unknown_name_fault
 from hystkit.circuit.design import Design
 from hystkit.circuit.parts import Part
-from hystkit.numeric.sampling import DISTRIBUTIONS, Plan
+from hystkit.numeric.sampling import Plan, request_faults
 from hystkit.numeric.uncertain import SORTED_OUT, Box, Quantity, uncertain
 from hystkit.numeric.views import Interval
 
@@ -56,7 +50,7 @@ def frequency_spread(
     DesignError
         If drift takes a part to zero.
     """
-    if faults := [*_faults(temperature, samples, seed, distribution, sigmas)]:
+    if faults := request_faults(temperature, samples, seed, distribution, sigmas):
         raise InputError.of("this spread", faults)
     ends = None if temperature is None else (float(temperature[0]), float(temperature[1]))
     box = uncertain(design, ends)
@@ -81,37 +75,3 @@ def _capacitor(part: Part, excursion: float) -> dict[str, Quantity]:
     # As for resistors: drift carries parts from the edge of the hole into it.
     hole = max(0.0, (SORTED_OUT * part.tol - drift) * part.value / ((high - low) / 2))
     return {CAPACITOR: Quantity(CAPACITOR, part.value, low, high, "F", hole)}
-
-
-def _faults(
-    temperature: Any, samples: Any, seed: Any, distribution: Any, sigmas: Any
-) -> Iterator[Fault]:
-    if temperature is not None and not _is_range(temperature):
-        yield Fault(
-            "the temperature is not a range.",
-            asked=f"temperature={temperature!r}",
-            rule="two numbers in °C, the lower one first",
-            remedy="temperature=(-20, 60), or None to leave drift out",
-        )
-    for name, value, least in (("samples", samples, 1), ("seed", seed, 0)):
-        if isinstance(value, bool) or not isinstance(value, Integral) or int(value) < least:
-            yield Fault(
-                f"{name} is not a whole number of at least {least}.",
-                asked=f"{name}={value!r}",
-                remedy=f"a number such as {name}={65536 if least else 0}",
-            )
-    if distribution not in DISTRIBUTIONS:
-        yield unknown_name_fault("distribution", str(distribution), DISTRIBUTIONS)
-    if not isinstance(sigmas, Real) or not 0 < float(sigmas) <= 8:
-        yield Fault(
-            "sigmas is not a number of standard deviations.",
-            asked=f"sigmas={sigmas!r}",
-            rule="0 < sigmas <= 8: half a range, such as a tolerance, in standard deviations",
-            remedy="sigmas=3",
-        )
-
-
-def _is_range(ends: Any) -> bool:
-    if isinstance(ends, str) or not hasattr(ends, "__len__") or len(ends) != 2:
-        return False
-    return all(isinstance(end, Real) and isfinite(end) for end in ends) and ends[0] <= ends[1]

@@ -22,7 +22,7 @@ from hystkit.circuit.parts import Part
 from hystkit.numeric.sampling import Plan
 from hystkit.numeric.trips import TripPoints, trip_points
 from hystkit.numeric.views import Interval
-from hystkit.numeric.yields import Yield
+from hystkit.numeric.yields import Yield, percent
 
 
 @dataclass(frozen=True)
@@ -243,9 +243,7 @@ class Candidate(Viewed):
         """The verdict, with the yield where windows were asked for."""
         if self.expected_yield is None:
             return self.verdict
-        share = self.expected_yield.value
-        text = f"{100 * share:.4g}"
-        return f"{self.verdict}; yield {text if share == 1 or text != '100' else '> 99.99'} %"
+        return f"{self.verdict}; yield {percent(self.expected_yield.value)}"
 
     @property
     def _room(self) -> tuple[float, str]:

@@ -10,7 +10,7 @@ import numpy as np
 
 from hystkit.analyses.sizing.target import Target
 from hystkit.base.errors import InfeasibleError, InputError
-from hystkit.base.quantity import show
+from hystkit.base.quantity import show, show_own
 from hystkit.circuit.parts import Part
 from hystkit.circuit.reading import Quantity
 from hystkit.circuit.signals import Signal
@@ -246,7 +246,9 @@ def shown_window(window: Interval, unit: str, digits: int = 6) -> str:
     str
         Such as "2.6 V to 2.8 V".
     """
-    low, high = (show(end, unit, digits=digits) for end in window)
+    # A percent of a measured quantity counts as 1.
+    write = show_own if unit == "%" else show
+    low, high = (write(end, unit, digits) for end in window)
     return low if window[0] == window[1] else f"{low} to {high}"
 
 

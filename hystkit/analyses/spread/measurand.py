@@ -14,11 +14,13 @@ from numpy.typing import NDArray
 from hystkit.analyses.spread import linear
 from hystkit.analyses.spread.bounds import Bound
 from hystkit.analyses.spread.reader import Reader
-from hystkit.analyses.spread.sensed import sensed_bounds
+from hystkit.analyses.spread.sensed import sensed_bounds, sensed_ends
 from hystkit.analyses.spread.signal_box import joint_box, labels, signal_quantities
 from hystkit.base.fields import Field, Viewed
 from hystkit.base.frozen import Named
+from hystkit.base.quantity import show_own
 from hystkit.circuit.signals import Signal
+from hystkit.numeric.measurand import shown_span
 from hystkit.numeric.sampling import blocks
 from hystkit.numeric.trips import trip_points
 from hystkit.numeric.uncertain import Box, Quantity
@@ -88,6 +90,14 @@ class MeasurandSpread(Viewed):
         of = self.spread
         found = sensed_bounds(reader, of.design, of.box.intervals, of.bounds, of.effects["lower"])
         return Named(found)
+
+    @cached_property
+    def trip_extremes(self) -> Named[Interval]:
+        """Lowest and highest "low" and "high" alone, as in `extremes` but sooner, in `unit`."""
+        reader = Reader(self.signal, self._parameters, self._labels)
+        of = self.spread
+        found = sensed_ends(reader, of.design, of.box.intervals, of.bounds)
+        return Named({end: bound.interval for end, bound in found.items()})
 
     @property
     def extremes(self) -> Named[Interval]:
@@ -250,9 +260,9 @@ class MeasurandSpread(Viewed):
         name, unit = self.signal.name, self.unit
         rows = []
         for end, bound in self.bounds.items():
-            gap = f", within {bound.gap:.1g} {unit}".rstrip() if bound.gap else ""
-            note = f"{bound.proof}{gap}; ± {self.rss[end]:.3g} {unit}".rstrip()
-            rows.append(Field(f"{name}, {end}", bound.interval, unit, f"{note} rss"))
+            gap = f", within {show_own(bound.gap, unit, 1)}" if bound.gap else ""
+            note = f"{bound.proof}{gap}; ± {show_own(self.rss[end], unit, 3)} rss"
+            rows.append(Field(f"{name}, {end}", shown_span(bound.interval, unit), "", note))
         for end in ("low", "high", "width"):
             text = linear.largest(self.contributions[end])
             rows.append(Field(f"{name}, {end} depends on", text, "", linear.MEASURE))

@@ -131,14 +131,11 @@ def sensed_bounds(
     more than a small gap, the box is cut along the quantity that moves the trip points most, for
     the two move together.
     """
-    names = ("low", "high", "width")
     seen = views(design, box, stated)
-    if any(np.isnan(view.bounds["width"].interval[0]) for view in seen):
-        return dict.fromkeys(names, _IMPOSSIBLE)
-    kinds = ("upper", "lower") if reader.signal.decreasing else ("lower", "upper")
-    low, high = (_end(reader, seen, kind) for kind in kinds)
-    if any(np.isnan(bound.interval[0]) for bound in (low, high)):
-        return dict.fromkeys(names, _IMPOSSIBLE)
+    ends = _ends(reader, seen)
+    if ends is None:
+        return dict.fromkeys(("low", "high", "width"), _IMPOSSIBLE)
+    low, high = ends
     span = (low.interval[0], high.interval[1])
     width = _width(reader, design, [seen], span)
     small = _SMALL_GAP * (width.interval[1] - width.interval[0])
@@ -148,6 +145,34 @@ def sensed_bounds(
         slices = [views(design, one, bounds(design, one, _KINDS)) for one in _slices(box, cut)]
         width = _width(reader, design, slices, span)
     return {"low": low, "high": high, "width": width}
+
+
+def sensed_ends(
+    reader: Reader, design: Design, box: dict[str, Interval], stated: Mapping[str, Bound]
+) -> dict[str, Bound]:
+    """Exact or guaranteed ranges of "low" and "high" alone, without the effort for the width.
+
+    Parameters
+    ----------
+    reader, design, box, stated
+        As for `sensed_bounds`.
+
+    Returns
+    -------
+    dict
+        To `Bound`, as `sensed_bounds` gives them.
+    """
+    low, high = _ends(reader, views(design, box, stated)) or (_IMPOSSIBLE, _IMPOSSIBLE)
+    return {"low": low, "high": high}
+
+
+def _ends(reader: Reader, seen: Sequence[View]) -> tuple[Bound, Bound] | None:
+    """Both ends; None where not every combination switches, or a trip point has no reading."""
+    if any(np.isnan(view.bounds["width"].interval[0]) for view in seen):
+        return None
+    kinds = ("upper", "lower") if reader.signal.decreasing else ("lower", "upper")
+    low, high = (_end(reader, seen, kind) for kind in kinds)
+    return None if any(np.isnan(bound.interval[0]) for bound in (low, high)) else (low, high)
 
 
 def _end(reader: Reader, seen: Sequence[View], kind: str) -> Bound:

@@ -2,16 +2,11 @@
 
 from __future__ import annotations
 
-from math import isfinite
-from numbers import Integral, Real
-from typing import Any
-
 from hystkit.analyses.spread.result import Spread
 from hystkit.analyses.spread.signal_box import signal_quantities
-from hystkit.base.errors import Fault, InputError
-from hystkit.base.nearest import unknown_name_fault
+from hystkit.base.errors import InputError
 from hystkit.circuit.design import Design
-from hystkit.numeric.sampling import DISTRIBUTIONS, Plan
+from hystkit.numeric.sampling import Plan, request_faults
 from hystkit.numeric.uncertain import uncertain
 from hystkit.numeric.views import Interval
 
@@ -75,8 +70,7 @@ def spread(
     >>> [round(end, 5) for end in s.extremes["upper"]], round(s.rss["upper"], 5)
     ([2.67482, 2.7245], 0.01642)
     """
-    faults = _faults(temperature, samples, seed, distribution, sigmas)
-    if faults:
+    if faults := request_faults(temperature, samples, seed, distribution, sigmas):
         raise InputError.of("this spread", faults)
     ends = None if temperature is None else (float(temperature[0]), float(temperature[1]))
     plan = Plan(int(samples), int(seed), distribution, float(sigmas))
@@ -85,49 +79,3 @@ def spread(
         # Refuses a drift to zero, as the line above does for the parts of the stage.
         signal_quantities(design.signal, box.excursion)
     return Spread(design, box, plan, ends)
-
-
-def _faults(
-    temperature: Any, samples: Any, seed: Any, distribution: Any, sigmas: Any
-) -> list[Fault]:
-    faults = []
-    if temperature is not None and not _is_range(temperature):
-        faults.append(
-            Fault(
-                "the temperature is not a range.",
-                asked=f"temperature={temperature!r}",
-                rule="two numbers in °C, the lower one first",
-                remedy="temperature=(-20, 60), or None to leave drift out",
-            )
-        )
-    for name, value, least in (("samples", samples, 1), ("seed", seed, 0)):
-        if not _is_whole(value, least):
-            faults.append(
-                Fault(
-                    f"{name} is not a whole number of at least {least}.",
-                    asked=f"{name}={value!r}",
-                    remedy=f"a number such as {name}={65536 if least else 0}",
-                )
-            )
-    if distribution not in DISTRIBUTIONS:
-        faults.append(unknown_name_fault("distribution", str(distribution), DISTRIBUTIONS))
-    if not isinstance(sigmas, Real) or not 0 < float(sigmas) <= 8:
-        faults.append(
-            Fault(
-                "sigmas is not a number of standard deviations.",
-                asked=f"sigmas={sigmas!r}",
-                rule="0 < sigmas <= 8: half a range, such as a tolerance, in standard deviations",
-                remedy="sigmas=3",
-            )
-        )
-    return faults
-
-
-def _is_whole(value: Any, least: int) -> bool:
-    return not isinstance(value, bool) and isinstance(value, Integral) and int(value) >= least
-
-
-def _is_range(ends: Any) -> bool:
-    if isinstance(ends, str) or not hasattr(ends, "__len__") or len(ends) != 2:
-        return False
-    return all(isinstance(end, Real) and isfinite(end) for end in ends) and ends[0] <= ends[1]

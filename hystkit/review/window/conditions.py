@@ -10,11 +10,11 @@ from hystkit.analyses.cycle.plants import Plant
 from hystkit.analyses.load_step.result import LoadStep
 from hystkit.analyses.noise.model import Noise
 from hystkit.base.errors import Fault, InputError
-from hystkit.base.quantity import read
+from hystkit.base.quantity import read, read_own, show_own
 from hystkit.circuit.design import Design
 from hystkit.circuit.reading import collect, is_kind, wrong_kind
-from hystkit.review.axis import Axis
-from hystkit.review.service import PROBABILITY
+from hystkit.review.axis import Axis, unit_faults
+from hystkit.review.service import PROBABILITY, out_of_range, read_hum
 from hystkit.review.trip_checks import SMALL_SHARE
 
 
@@ -74,7 +74,7 @@ class Conditions:
         """What is to be said about the uncertainty of the trips; empty where there is none."""
         if not self.uncertainty:
             return ""
-        return f", with trips within ± {self.uncertainty:.3g} {self.axis.unit}"
+        return f", with trips within ± {show_own(self.uncertainty, self.axis.unit, 3)}"
 
     def changed(self, **changes: Any) -> Conditions:
         """Give changed conditions.
@@ -109,7 +109,7 @@ def read_conditions(given: dict[str, Any], unit: str) -> dict[str, Any]:
     """
     faults: list[Fault] = []
     found: dict[str, Any] = {name: _number(faults, name, given[name], unit) for name in _UNITS}
-    found["hum"] = _hum(faults, given["hum"])
+    found["hum"] = None if given["hum"] is None else read_hum(faults, given["hum"])
     found["load_step"] = _load_step(faults, given["load_step"])
     for name, kind in (("noise", Noise), ("plant", Plant)):
         if not is_kind(given[name], kind | None):
@@ -141,27 +141,11 @@ def _number(faults: list[Fault], name: str, value: Any, unit: str) -> float | No
     if value is None:
         return None
     own = _UNITS[name]
-    number = collect(faults, lambda: read(value, unit=unit if own is None else own, name=name))
+    number = collect(faults, lambda: read_own(value, unit=unit if own is None else own, name=name))
     share = name in ("probability", "error_share")
     if number < 0 or (number == 0 and name != "uncertainty") or (share and number >= 1):
-        rule = f"0 < {name} < 1" if share else f"{name} > 0"
-        faults.append(Fault(f"{name} is out of range.", f"{name} = {number:g}", rule=rule))
+        faults.append(out_of_range(name, number, share))
     return number
-
-
-def _hum(faults: list[Fault], value: Any) -> tuple[float, float] | None:
-    if value is None:
-        return None
-    if isinstance(value, str) or not hasattr(value, "__len__") or len(value) != 2:
-        faults.append(wrong_kind("hum", value, "a pair", 'hum=("30 mV", "100 Hz")'))
-        return None
-    amplitude = collect(faults, lambda: read(value[0], unit="V", name="hum amplitude"))
-    frequency = collect(faults, lambda: read(value[1], unit="Hz", name="hum frequency"))
-    if amplitude <= 0 or frequency <= 0:
-        faults.append(
-            Fault("hum is out of range.", f"hum = {value!r}", rule="amplitude and frequency > 0")
-        )
-    return amplitude, frequency
 
 
 def _load_step(faults: list[Fault], value: Any) -> float | None:
@@ -190,15 +174,7 @@ def _missing(found: dict[str, Any], unit: str) -> list[Fault]:
             faults.append(
                 Fault("a window is for one plant.", have=f"plants of shape {plant.shape}")
             )
-        if plant.unit and plant.unit != unit:
-            faults.append(
-                Fault(
-                    "plant and signal have different units.",
-                    asked=f"plant in {plant.unit}",
-                    have=f"signal in {unit}",
-                    remedy="one unit for both",
-                )
-            )
+        faults += unit_faults(plant, unit)
     disturbed = found["noise"] is not None or found["hum"] is not None
     if disturbed and found["slope"] is None and plant is None:
         faults.append(

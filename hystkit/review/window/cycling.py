@@ -2,38 +2,101 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterator
+import math
+from collections.abc import Callable, Iterator
 from dataclasses import dataclass
+from functools import cached_property
+from math import nan
 from typing import Any
 
 import numpy as np
+from numpy.typing import NDArray
+from scipy.interpolate import CubicSpline
 
 from hystkit.analyses.cycle.result import Cycle
 from hystkit.analyses.cycle.steady import steady_cycle
-from hystkit.base.quantity import show
+from hystkit.base.quantity import show, show_own
 from hystkit.review.window.bound import Bound
 from hystkit.review.window.conditions import Conditions
-from hystkit.review.window.search import Flags, Requirement, limiting_widths
+from hystkit.review.window.search import Flags, Requirement, first_widths, limiting_widths
 
 
-def cycle_bounds(asked: Conditions) -> list[Bound]:
+@dataclass(frozen=True)
+class Survey:
+    """The cycles of a plant over all widths, evaluated once for everything that needs them.
+
+    Attributes
+    ----------
+    asked : Conditions
+        With a plant.
+    widths : ndarray
+        In the unit of the axis.
+    cycle : Cycle
+        At these widths.
+    """
+
+    asked: Conditions
+    widths: NDArray[np.float64]
+    cycle: Cycle
+
+    @classmethod
+    def of(cls, asked: Conditions) -> Survey:
+        """Evaluate the cycles.
+
+        Parameters
+        ----------
+        asked : Conditions
+            With a plant.
+        """
+        widths = first_widths(asked.axis.longest)
+        return cls(asked, widths, cycle_at(asked, widths))
+
+    def passage(self, width: float) -> float:
+        """Give the slope of the signal where it passes the trips, the slower one of both.
+
+        Parameters
+        ----------
+        width : float
+            In the unit of the axis.
+
+        Returns
+        -------
+        float
+            [V/s], between the widths of the survey by a spline; NaN where the plant does not cycle.
+        """
+        return float(np.exp(self._slopes(math.log(width)))) if self._slopes and width > 0 else nan
+
+    @cached_property
+    def _slopes(self) -> Callable[[float], Any] | None:
+        slopes = np.asarray(self.asked.axis.passage(self.cycle, self.widths))
+        known = slopes > 0
+        if np.count_nonzero(known) < 2:
+            return None
+        spline: Callable[[float], Any] = CubicSpline(
+            np.log(self.widths[known]), np.log(slopes[known]), extrapolate=False
+        )
+        return spline
+
+
+def cycle_bounds(survey: Survey) -> list[Bound]:
     """Give every bound that the cycle of the plant sets.
 
     Parameters
     ----------
-    asked : Conditions
-        Requirements on the width, with a plant.
+    survey : Survey
+        Cycles over all widths.
 
     Returns
     -------
     list of Bound
         Floors and ceilings, in the unit of the axis.
     """
+    asked = survey.asked
     limits = list(_limits(asked))
     widths = limiting_widths(
         lambda tried: cycle_at(asked, tried),
         [limit.requirement for limit in limits],
-        asked.axis.longest,
+        (survey.widths, survey.cycle),
     )
     return [limit.bound(asked, width) for limit, width in zip(limits, widths, strict=True)]
 
@@ -98,7 +161,7 @@ class _Limit:
 def _limits(asked: Conditions) -> Iterator[_Limit]:
     # Where the plant does not cycle, "reach" says so, and nothing else does.
     if asked.starts_per_hour is not None:
-        text = f"at most {asked.starts_per_hour:.4g} starts per hour"
+        text = f"at most {show_own(asked.starts_per_hour)} starts per hour"
         yield _at_most("cycling", "starts_per_hour", asked.starts_per_hour, text)
     for name, least in (("on", asked.min_on), ("off", asked.min_off)):
         if least is not None:
@@ -128,5 +191,6 @@ def _swing(asked: Conditions, most: float) -> _Limit:
     def meets(cycle: Cycle) -> Flags:
         return ~(np.asarray(swing_of(asked, cycle)) > most)
 
-    text = f"the process value swings by {most:.4g} {asked.axis.unit} at most{asked.spread_text}"
+    shown = show_own(most, asked.axis.unit)
+    text = f"the process value swings by {shown} at most{asked.spread_text}"
     return _Limit("swing", Requirement(meets, least=False), text)

@@ -11,25 +11,28 @@ from hystkit.analyses.noise.inverse import width_for
 from hystkit.base.quantity import show
 from hystkit.review.window.bound import Bound
 from hystkit.review.window.conditions import Conditions
-from hystkit.review.window.cycling import cycle_at
+from hystkit.review.window.cycling import Survey, cycle_at
 
 #: Name of the floor for everything that disturbs the signal at one time.
 TOGETHER = "all disturbances"
 NAMES = ("noise", "hum", "load step", TOGETHER)
-#: The width follows from the slope and the slope from the width: they settle within this share.
-_SETTLED = 1e-7
+#: The width follows from the slope and the slope from the width; what is left of a change this
+#: small, as a share, is a hundred times smaller.
+_SETTLED = 1e-4
 _ROUNDS = 50
 
 Share = Callable[[float], float]
 
 
-def disturbance_floors(asked: Conditions) -> Iterator[Bound]:
+def disturbance_floors(asked: Conditions, survey: Survey | None) -> Iterator[Bound]:
     """Give the floor of each disturbance, and that of all of them together.
 
     Parameters
     ----------
     asked : Conditions
         Requirements on the width.
+    survey : Survey or None
+        Cycles of the plant over all widths; None without a plant.
 
     Yields
     ------
@@ -37,10 +40,16 @@ def disturbance_floors(asked: Conditions) -> Iterator[Bound]:
         Least width, in the unit of the axis.
     """
     shares = needs(asked)
+
+    def slope_at(width: float) -> float:
+        if asked.slope is not None or survey is None:
+            return math.nan if asked.slope is None else asked.slope
+        return survey.passage(width)
+
     for name, share in shares.items():
-        yield _floor(asked, name, {name: share})
+        yield _floor(asked, name, {name: share}, slope_at)
     if len(shares) > 1:
-        yield _floor(asked, TOGETHER, shares)
+        yield _floor(asked, TOGETHER, shares, slope_at)
 
 
 def needs(asked: Conditions) -> dict[str, Share]:
@@ -54,16 +63,20 @@ def needs(asked: Conditions) -> dict[str, Share]:
     Returns
     -------
     dict
-        Name to a function of the slope [V/s] that gives a distance of the trip points [V].
+        Name to a function of the slope [V/s] that gives a distance of the trip points [V], NaN
+        where the plant does not cycle and has no slope.
     """
     found: dict[str, Share] = {}
     noise, hum, step = asked.noise, asked.hum, asked.load_step
     if noise is not None:
+        # In an array a slope that is not known is no fault: the width is not known then, too.
         found["noise"] = cache(
-            lambda slope: float(width_for(probability=asked.probability, noise=noise, slope=slope))
+            lambda slope: float(
+                width_for(probability=asked.probability, noise=noise, slope=[slope])[0]
+            )
         )
     if hum is not None:
-        found["hum"] = lambda slope: float(hum_width(*hum, slope))
+        found["hum"] = lambda slope: float(hum_width(*hum, [slope])[0])
     if step is not None:
         found["load step"] = lambda _: step
     return found
@@ -88,11 +101,14 @@ def passage(asked: Conditions, width: float) -> float:
         return asked.slope
     if asked.plant is None:
         return math.nan
-    return asked.axis.passage(cycle_at(asked, width), width)
+    return float(asked.axis.passage(cycle_at(asked, width), width))
 
 
-def _floor(asked: Conditions, name: str, shares: Mapping[str, Share]) -> Bound:
-    width, slope = _self_consistent(asked, lambda at: math.fsum(f(at) for f in shares.values()))
+def _floor(asked: Conditions, name: str, shares: Mapping[str, Share], slope_at: Share) -> Bound:
+    def need(slope: float) -> float:
+        return math.fsum(share(slope) for share in shares.values())
+
+    width, slope = _self_consistent(asked, need, slope_at)
     if not math.isfinite(width):
         return Bound(name, "floor", width, "more than plant and signal leave room for")
     text = " + ".join(f"{part} {show(f(slope), 'V', 3)}" for part, f in shares.items())
@@ -103,13 +119,13 @@ def _floor(asked: Conditions, name: str, shares: Mapping[str, Share]) -> Bound:
     return Bound(name, "floor", width, text)
 
 
-def _self_consistent(asked: Conditions, need: Share) -> tuple[float, float]:
-    """Find the width whose own slope asks for it."""
-    width = asked.axis.width
+def _self_consistent(asked: Conditions, need: Share, slope_at: Share) -> tuple[float, float]:
+    """Find the width whose own slope asks for it; it hardly depends on the one tried."""
+    tried = asked.axis.width
     for _ in range(_ROUNDS):
-        slope = passage(asked, width)
+        slope = slope_at(tried)
         wanted = asked.axis.width_of(need(slope))
-        if not abs(wanted - width) > _SETTLED * asked.axis.longest or math.isinf(wanted):
+        if not math.isfinite(wanted) or abs(wanted - tried) <= _SETTLED * wanted:
             break
-        width = wanted
+        tried = wanted
     return wanted, slope

@@ -5,11 +5,11 @@ from __future__ import annotations
 import math
 from collections.abc import Iterator, Sequence
 
-from hystkit.base.quantity import show
+from hystkit.base.quantity import show, show_own
 from hystkit.numeric.views import Interval
 from hystkit.review.window.bound import Bound
 from hystkit.review.window.conditions import Conditions
-from hystkit.review.window.cycling import cycle_bounds
+from hystkit.review.window.cycling import Survey, cycle_bounds
 from hystkit.review.window.disturbances import disturbance_floors
 
 
@@ -26,8 +26,9 @@ def evaluated(asked: Conditions) -> tuple[Bound, ...]:
     tuple of Bound
         Floors from the highest, then ceilings from the lowest.
     """
-    found = [*disturbance_floors(asked), *_errors(asked)]
-    found += [] if asked.plant is None else cycle_bounds(asked)
+    survey = None if asked.plant is None else Survey.of(asked)
+    found = [*disturbance_floors(asked, survey), *_errors(asked)]
+    found += [] if survey is None else cycle_bounds(survey)
     floors = sorted((b for b in found if b.kind == "floor"), key=lambda b: -b.width)
     ceilings = sorted((b for b in found if b.kind == "ceiling"), key=lambda b: b.width)
     return (*floors, *ceilings)
@@ -44,9 +45,9 @@ def limits(bounds: Sequence[Bound]) -> tuple[Bound | None, Bound | None]:
     Returns
     -------
     tuple of Bound or None
-        None where there is no bound of the kind.
+        None where there is no bound of the kind; a floor that any width meets is none.
     """
-    floor = next((b for b in bounds if b.kind == "floor"), None)
+    floor = next((b for b in bounds if b.kind == "floor" and b.width > 0), None)
     ceiling = next((b for b in bounds if b.kind == "ceiling"), None)
     return floor, ceiling
 
@@ -81,9 +82,9 @@ def _errors(asked: Conditions) -> Iterator[Bound]:
         yield Bound("offset", "floor", axis.width_of(asked.error / asked.error_share), text)
     if asked.accuracy is not None:
         width = max(2 * (asked.accuracy - asked.uncertainty), 0.0)
-        text = f"trips within ± {asked.accuracy:.4g} {unit} of {axis.middle:.4g} {unit}"
+        text = f"trips within ± {show_own(asked.accuracy, unit)} of {show_own(axis.middle, unit)}"
         yield Bound("accuracy", "ceiling", width, text + asked.spread_text)
     if asked.plant is None and axis.signal is not None:
         low, high = axis.signal.span
-        text = f"the signal spans {low:.4g} to {high:.4g} {unit}"
+        text = f"the signal spans {show_own(low)} to {show_own(high, unit)}"
         yield Bound("reach", "ceiling", axis.longest, text)

@@ -12,7 +12,7 @@ from scipy.optimize import brentq
 
 from hystkit.analyses.noise.chatter import chatter
 from hystkit.base.frozen import Named
-from hystkit.base.quantity import show
+from hystkit.base.quantity import show, show_own
 from hystkit.numeric.views import Interval
 from hystkit.review.window.bound import Bound
 from hystkit.review.window.conditions import Conditions
@@ -107,11 +107,11 @@ def _quieter(asked: Conditions, width: float) -> Iterator[_Change]:
     if asked.noise is not None and left["noise"] > 0:
         noise = asked.noise
         share = _scaled(
-            lambda k: needs(asked.changed(noise=replace(noise, rms=k * noise.rms)))["noise"](slope),
+            lambda k: needs(asked.changed(noise=noise.scaled(k)))["noise"](slope),
             left["noise"],
         )
         if share is not None:
-            quieter = replace(noise, rms=_down(share * noise.rms))
+            quieter = noise.scaled(_down(share * noise.rms) / noise.rms)
             yield _Change(f"noise of at most {show(quieter.rms, 'V', 3)} rms", {"noise": quieter})
         often = _up(float(chatter(left["noise"], asked.noise, slope).probability))
         if often < _USELESS:
@@ -136,7 +136,7 @@ def _quieter(asked: Conditions, width: float) -> Iterator[_Change]:
 def _rarer(asked: Conditions, width: float) -> Iterator[_Change]:
     starts = _up(float(cycle_at(asked, width).starts_per_hour))
     if math.isfinite(starts):
-        yield _Change(f"{starts:.4g} starts per hour allowed", {"starts_per_hour": starts})
+        yield _Change(f"{show_own(starts)} starts per hour allowed", {"starts_per_hour": starts})
 
 
 def _shorter_on(asked: Conditions, width: float) -> Iterator[_Change]:
@@ -160,7 +160,7 @@ def _larger_share(asked: Conditions, width: float) -> Iterator[_Change]:
 
 def _less_accurate(asked: Conditions, width: float) -> Iterator[_Change]:
     unit, accuracy = asked.axis.unit, _up(width / 2 + asked.uncertainty)
-    yield _Change(f"trips allowed within ± {accuracy:.4g} {unit}", {"accuracy": accuracy})
+    yield _Change(f"trips allowed within ± {show_own(accuracy, unit)}", {"accuracy": accuracy})
     if asked.accuracy is not None:
         yield from _closer(asked, asked.accuracy - width / 2)
 
@@ -170,7 +170,7 @@ def _more_swing(asked: Conditions, width: float) -> Iterator[_Change]:
     if not math.isfinite(needed) or asked.swing is None:
         return
     swing = _up(needed)
-    yield _Change(f"a swing of {swing:.4g} {unit} allowed", {"swing": swing})
+    yield _Change(f"a swing of {show_own(swing, unit)} allowed", {"swing": swing})
     yield from _closer(asked, asked.uncertainty - (needed - asked.swing) / 2)
     yield from _prompter(asked, width, asked.swing)
 
@@ -178,7 +178,7 @@ def _more_swing(asked: Conditions, width: float) -> Iterator[_Change]:
 def _closer(asked: Conditions, uncertainty: float) -> Iterator[_Change]:
     if 0 < uncertainty < asked.uncertainty:
         closer = _down(uncertainty)
-        text = f"closer tolerances: trips within ± {closer:.3g} {asked.axis.unit}"
+        text = f"closer tolerances: trips within ± {show_own(closer, asked.axis.unit, 3)}"
         yield _Change(text, {"uncertainty": closer})
 
 

@@ -37,10 +37,26 @@ class Requirement(Generic[Outcome]):
     least: bool
 
 
+def first_widths(longest: float) -> Widths:
+    """Give the widths to begin with.
+
+    Parameters
+    ----------
+    longest : float
+        Longest width that is tried.
+
+    Returns
+    -------
+    ndarray
+        Ascending, spaced by a ratio.
+    """
+    return np.geomspace(_SHORTEST * longest, longest, _FIRST)
+
+
 def limiting_widths(
     evaluate: Callable[[Widths], Outcome],
     requirements: Sequence[Requirement[Outcome]],
-    longest: float,
+    begun: tuple[Widths, Outcome],
 ) -> list[float]:
     """Find the limiting width of each requirement.
 
@@ -50,8 +66,8 @@ def limiting_widths(
         Gives the outcome at an array of widths; called a few times only, for all requirements.
     requirements : sequence of Requirement
         What the outcome has to meet.
-    longest : float
-        Longest width that is tried.
+    begun : pair of ndarray and outcome
+        The widths to begin with, and the outcome at them.
 
     Returns
     -------
@@ -60,8 +76,7 @@ def limiting_widths(
         of a greatest width infinite where every width will do and zero where the shortest will
         not. Between them the last width of the grid that meets the requirement.
     """
-    widths = np.geomspace(_SHORTEST * longest, longest, _FIRST)
-    outcome = evaluate(widths)
+    widths, outcome = begun
     found = [_close(one, widths, np.asarray(one.meets(outcome))) for one in requirements]
     for _ in range(_STEPS):
         between = [ends for ends in found if isinstance(ends, tuple)]

@@ -14,6 +14,7 @@ from hystkit.analyses.noise.model import Noise
 from hystkit.analyses.spread.spread import spread
 from hystkit.base.errors import InputError
 from hystkit.base.fields import Field, Viewed
+from hystkit.base.quantity import show_own
 from hystkit.circuit.design import Design
 from hystkit.circuit.reading import Quantity, is_kind, wrong_kind
 from hystkit.numeric.views import Interval
@@ -117,7 +118,10 @@ class WidthWindow(Viewed):
         rows.append(Field("feasible", verdict, "", self._binding()))
         where = "inside" if self.inside else "outside"
         rows.append(Field("width of the design", self._plain(self.width), "", where))
-        return [*rows, *(Field("would open it", opening.text) for opening in self.openings)]
+        for opening in self.openings:
+            then = " to ".join(self._plain(end) for end in opening.feasible)
+            rows.append(Field("would open it", then, "", opening.text))
+        return rows
 
     def _binding(self) -> str:
         names = [bound.name for bound in (self.floor, self.ceiling) if bound is not None]
@@ -126,7 +130,7 @@ class WidthWindow(Viewed):
     def _plain(self, width: float) -> str:
         if math.isinf(width):
             return "beyond reach"
-        return f"{width:.4g} {self.unit}"
+        return show_own(width, self.unit)
 
 
 def width_window(
@@ -243,7 +247,7 @@ def _uncertainty(design: Design, axis: Axis, temperature: Interval | None) -> fl
     """How far either trip lies off at most over all tolerances, in the unit of the axis."""
     found = spread(design, temperature=temperature)
     sensed = found.measurand
-    extremes = found.extremes if sensed is None else sensed.extremes
+    extremes = found.extremes if sensed is None else sensed.trip_extremes
     names = ("lower", "upper") if sensed is None else ("low", "high")
     nominal = sorted(axis.edges(axis.width))
     pairs = zip(names, nominal, strict=True)
