@@ -35,7 +35,8 @@ def read(value: float | str, *, unit: str = "", name: str = "value") -> float:
     ----------
     value : float or str
         A number, returned as it is, or text such as ``"4k7"``, ``"4.7 kΩ"``, ``"100n"``,
-        ``"1R5"``, ``"2.2e3"`` or ``"-15"``. Micro may be written µ or u, ohm Ω, ohm or R.
+        ``"1R5"``, ``"2.2e3"`` or ``"-15"``. Micro may be written µ or u, ohm Ω, ohm or R; where
+        seconds are expected, min and h are read too.
     unit : str, optional
         The unit expected, such as ``"Ω"`` or ``"V"``. Text may name it or leave it out, except
         with ``"%"``: text has to carry its sign, and only a number is taken as the fraction.
@@ -60,6 +61,8 @@ def read(value: float | str, *, unit: str = "", name: str = "value") -> float:
     --------
     >>> read("4k7", unit="Ω"), read("-20 mV", unit="V"), read("1 %", unit="%")
     (4700.0, -0.02, 0.01)
+    >>> read("2.5 h", unit="s"), read("30 mm/min", unit="m/s")
+    (9000.0, 0.0005)
     """
     number = _parse(value, unit_of(unit)) if isinstance(value, str) else _plain(value)
     if number is None or not math.isfinite(number):
@@ -278,6 +281,9 @@ def _parse(text: str, unit: Unit) -> float | None:
     text = text.strip().replace("\N{MINUS SIGN}", "-")
     if (match := _NUMBER.fullmatch(text)) and match[3] in unit.suffixes:
         return _assembled(match[1], int(match[2] or 0) + unit.suffixes[match[3]])
+    if match and match[3] in unit.multiples:
+        exponent, factor = unit.multiples[match[3]]
+        return factor * _assembled(match[1], int(match[2] or 0) + exponent)
     # A unit may follow unless the letter is the unit already: 4k7 Ω, but 3V3.
     if (
         (match := _LETTER_CODE.fullmatch(text))

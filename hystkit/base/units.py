@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Mapping
-from dataclasses import dataclass
+from dataclasses import dataclass, field
 from functools import lru_cache
 
 #: SI prefixes as they are shown, and the power of ten of each.
@@ -26,6 +26,9 @@ _SPELLINGS: Mapping[str, tuple[str, ...]] = {
     "Ω": ("Ω", "\u2126", "ohm", "ohms", "Ohm"),
     "°C": ("°C", "degC", "\u2103", "C"),
 }
+
+#: Multiples of the second that are read; times are shown in seconds.
+_MINUTES_AND_HOURS: Mapping[str, float] = {"min": 60.0, "h": 3600.0}
 
 #: Ratios: every spelling and its power of ten. The first one is shown.
 _RATIOS: Mapping[str, Mapping[str, int]] = {
@@ -50,6 +53,9 @@ class Unit:
         Letters that may stand in place of the decimal point, and their power of ten.
     shown : mapping of int to str
         The unit as it is shown, by power of ten.
+    multiples : mapping of str to tuple
+        What may follow a number and stands for no power of ten, such as "min": a power of ten and
+        a factor.
     """
 
     symbol: str
@@ -57,6 +63,7 @@ class Unit:
     suffixes: Mapping[str, int]
     marks: Mapping[str, int]
     shown: Mapping[int, str]
+    multiples: Mapping[str, tuple[int, float]] = field(default_factory=dict)
 
     def scale_for(self, exponent: int) -> int:
         """Return the power of ten to show a number in whose first digit stands at `exponent`."""
@@ -87,7 +94,8 @@ def unit_of(symbol: str) -> Unit:
     if symbol in ("Ω", ""):
         suffixes["R"] = 0
     marks = {suffix: e for suffix, e in suffixes.items() if len(suffix) == 1 and suffix.isalpha()}
-    return Unit(symbol, frozenset([*names, ""]), suffixes, marks, shown)
+    multiples = _in_minutes_and_hours(symbol, suffixes)
+    return Unit(symbol, frozenset([*names, ""]), suffixes, marks, shown, multiples)
 
 
 def latex_unit(text: str) -> str:
@@ -105,6 +113,18 @@ def latex_unit(text: str) -> str:
     """
     body = "".join(_LATEX.get(c, c if c.isascii() else _boxed(c)) for c in _with_root(text))
     return rf"\mathrm{{{body.rstrip()}}}" if text else ""
+
+
+def _in_minutes_and_hours(symbol: str, suffixes: Mapping[str, int]) -> dict[str, tuple[int, float]]:
+    """Minutes and hours, where seconds are expected alone or behind a slash."""
+    if symbol == "s":
+        return {name: (0, seconds) for name, seconds in _MINUTES_AND_HOURS.items()}
+    return {
+        f"{suffix.removesuffix('s')}{name}": (exponent, 1 / seconds)
+        for suffix, exponent in suffixes.items()
+        if suffix.endswith("/s")
+        for name, seconds in _MINUTES_AND_HOURS.items()
+    }
 
 
 def _ratio(symbol: str) -> Unit:

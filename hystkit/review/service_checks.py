@@ -204,7 +204,7 @@ def _wide_enough(name: str, text: str, width: float, needed: float) -> Finding:
 
 
 def _share(probability: float) -> str:
-    return f"less than {_RAREST:g}" if probability < _RAREST else show(probability, digits=2)
+    return "fewer than one in 10⁹" if probability < _RAREST else show(probability, digits=2)
 
 
 def _starts(cycle: Cycle, most: float | None) -> Iterator[Finding]:

@@ -336,3 +336,25 @@ def test_tolerance_letters_ascend() -> None:
     assert sorted(TOLERANCE_LETTERS.items()) == sorted(
         TOLERANCE_LETTERS.items(), key=lambda item: item[1]
     )
+
+
+@pytest.mark.parametrize(
+    ("text", "unit", "expected"),
+    [
+        ("30 min", "s", 1800.0),
+        ("1.5h", "s", 5400.0),
+        ("-1e1 min", "s", -600.0),
+        ("30 mm/min", "m/s", 5e-4),
+        ("7.2 V/h", "V/s", 2e-3),
+        ("90 °C/min", "°C/s", 1.5),
+        ("10 m", "s", 0.01),
+    ],
+)
+def test_minutes_and_hours_are_read_for_seconds(text: str, unit: str, expected: float) -> None:
+    assert read(text, unit=unit) == pytest.approx(expected, rel=1e-15)
+
+
+@pytest.mark.parametrize(("text", "unit"), [("5 min", "V"), ("5 h", "m"), ("5 kmin", "s")])
+def test_minutes_and_hours_stand_for_nothing_else(text: str, unit: str) -> None:
+    with pytest.raises(QuantityError):
+        read(text, unit=unit)

@@ -215,7 +215,7 @@ def test_a_start_shows_the_run_from_there(panel: hk.panels.CyclePanel) -> None:
         ("dead_time", "1 / 2 / 3", "more than two parts"),
         ("on_level", "3 V", "is not in m"),
         ("min_on", "-1", "out of range"),
-        ("starts_per_hour", "0", "out of range"),
+        ("starts_per_hour", "0", "not above 0"),
         ("operations", "-5", "not positive"),
         ("until", "0", "out of range"),
     ],

@@ -219,7 +219,7 @@ def test_a_plant_in_another_unit_is_refused() -> None:
 
 def test_numbers_stay_readable() -> None:
     rare = only("noise", noise=QUIET, slope=1.0)
-    assert "less than 1e-09 of the passages" in rare.text
+    assert "fewer than one in 10⁹ of the passages" in rare.text
     quick = only("cycling", plant=filling(0.9, -0.9), starts_per_hour=20_000)
     assert "3240 starts per hour, 50 % on, allowed are 20000" in quick.text
 
