@@ -3,15 +3,16 @@
 from __future__ import annotations
 
 import math
-from collections.abc import Mapping
+from collections.abc import Mapping, Sequence
 from dataclasses import dataclass, fields, replace
 from functools import cached_property
 from typing import Any
 
 from hystkit.base.errors import DesignError, Fault, UnknownNameError
+from hystkit.base.fields import Field, Viewed
 from hystkit.base.frozen import Named
 from hystkit.base.nearest import unknown_name_fault
-from hystkit.base.quantity import read
+from hystkit.base.quantity import code, read, show, show_own
 from hystkit.circuit.code import design_code
 from hystkit.circuit.design_checks import design_faults, kind_faults, read_parts, read_supply
 from hystkit.circuit.device import Device
@@ -25,7 +26,7 @@ PartLike = Part | Quantity
 
 
 @dataclass(frozen=True)
-class Design:
+class Design(Viewed):
     """A complete, frozen design; changed copies come from the ``with_...`` methods.
 
     Parameters
@@ -198,6 +199,27 @@ class Design:
             The changed copy.
         """
         return self._with(signal=signal)
+
+    @property
+    def _title(self) -> str:
+        return self.name or "Design"
+
+    def _fields(self) -> Sequence[Field]:
+        supply, signal = self.supply, self.signal
+        rails = f" and {show(supply.low_rail, 'V')}" if supply.split else ""
+        tol = f"± {show(supply.tol, '%')}" if supply.tol else ""
+        rows = [
+            Field("form", self.stage.title),
+            *(Field(n, code(p.value, 6), note=p.rating) for n, p in self.parts.items()),
+            *(Field(n, p.value, "V", p.rating) for n, p in self.levels.items()),
+            Field("supply", f"{show(supply.v_cc, 'V')}{rails}", note=tol),
+            Field("device", self.device.title or "without a name"),
+        ]
+        if signal is not None:
+            low, high = signal.span
+            span = f"{show_own(low)} to {show_own(high, signal.unit)}"
+            rows.append(Field("signal", signal.name, note=span))
+        return rows
 
     def _with(self, **changes: Any) -> Design:
         return replace(self, **changes)

@@ -6,7 +6,7 @@ import math
 from dataclasses import dataclass
 
 from hystkit.base.errors import DesignError, Fault
-from hystkit.base.quantity import parse_percent, read
+from hystkit.base.quantity import parse_percent, read, show
 from hystkit.circuit.reading import Quantity, collect, set_frozen
 
 #: Above this a temperature coefficient [1/K] was most likely meant in ppm/K.
@@ -79,6 +79,13 @@ class Part:
     def unit(self) -> str:
         """Unit that the text of the value carried, "Ω" or "V"; empty where it carried none."""
         return str(vars(self)["_unit"])
+
+    @property
+    def rating(self) -> str:
+        """Tolerance and temperature coefficient in words; empty where neither is stated."""
+        found = [f"± {show(self.tol, '%')}"] if self.tol else []
+        found += [f"{self.tempco * 1e6:g} ppm/K"] if self.tempco else []
+        return ", ".join(found)
 
     def with_value(self, value: Quantity) -> Part:
         """Give the same part with another nominal value.

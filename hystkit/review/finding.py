@@ -42,6 +42,11 @@ class Finding:
     unit: str = ""
     remedy: str = ""
 
+    def __str__(self) -> str:
+        """Return the finding in one line."""
+        note = _note(self)
+        return f"{SIGNS[self.severity]} {self.name}: {self.text}{f' ({note})' if note else ''}"
+
 
 @dataclass(frozen=True)
 class Review(Viewed):

@@ -261,3 +261,23 @@ def test_a_design_is_frozen() -> None:
         design.name = "other"  # type: ignore[misc]
     with pytest.raises(TypeError):
         design.parts["R_T"] = hk.Part(1)  # type: ignore[index]
+
+
+def test_views_tell_what_is_built() -> None:
+    level = hk.signals.Linear(1.2, 0.6, span=(0, 2), unit="m", name="level")
+    design = hk.Design(
+        hk.Stage("inverting"),
+        {"R_T": hk.Part("46k4", tol=0.01, tempco=50e-6), "R_B": "26k7", "R_F": "100k"},
+        supply=hk.Supply(5.0, tol=0.02),
+        signal=level,
+        name="tank",
+    )
+    lines = [line.split("  ") for line in str(design).splitlines()]
+    assert lines[0] == ["tank"]
+    told = {line[0]: [piece.strip() for piece in line[1:] if piece.strip()] for line in lines[1:]}
+    assert told["R_T"] == ["46k4", "± 1 %, 50 ppm/K"]
+    assert told["R_B"] == ["26k7"]
+    assert told["supply"] == ["5 V", "± 2 %"]
+    assert told["signal"] == ["level", "0 to 2 m"]
+    assert "<table" in design._repr_html_()
+    assert "46k4" in design.to_latex()
