@@ -32,11 +32,15 @@ def order(evidence: Evidence) -> Iterator[Finding]:
     Yields
     ------
     Finding
-        Distance between the lowest upper and the highest lower trip.
+        Distance between the lowest upper and the highest lower trip; at the nominal supply where
+        the signal is a share of it, for both then follow it together.
     """
-    intervals = trip_intervals(evidence.design)
+    signal = evidence.design.signal
+    follows = signal is not None and signal.ratiometric
+    held = evidence.design.with_supply(tol=0.0) if follows else evidence.design
+    intervals = trip_intervals(held)
     if intervals is None:
-        why = not_evaluated(evidence.design)
+        why = not_evaluated(held)
         yield Finding(
             "order",
             "note",
@@ -60,7 +64,7 @@ def order(evidence: Evidence) -> Iterator[Finding]:
         "order",
         severity,
         f"upper from {show(upper_low, 'V')}, lower up to {show(lower_high, 'V')};"
-        f" the trips spread by {show(spread, 'V', 3)}",
+        f" the trips spread by {show(spread, 'V', 3)}{', the supply apart' if follows else ''}",
         gap,
         "V",
         ""

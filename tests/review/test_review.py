@@ -91,6 +91,19 @@ def test_order_over_tolerances(tol: float, severity: str) -> None:
     assert found.unit == "V"
 
 
+def test_order_leaves_out_a_supply_that_the_sensor_shares() -> None:
+    shared = S.SensorDivider(S.Ntc("10k", 3950), "10k", span=(0, 60))
+    parts = {
+        name: hk.Part(value, tol=0.001)
+        for name, value in {"R_T": "10k", "R_B": "10k", "R_F": "100k"}.items()
+    }
+    steady = divided(parts=parts, signal=shared)
+    loose = steady.with_supply(tol=0.2)
+    assert only(loose, "order").severity == "pass"
+    assert only(loose, "order").margin == pytest.approx(only(steady, "order").margin)
+    assert only(loose.with_signal(None), "order").severity == "warning"
+
+
 def test_order_where_some_combination_does_not_switch() -> None:
     limits = {"drop_high": (0.0, 3.0), "drop_low": (0.0, 3.0)}
     found = only(plain(device=hk.Device(limits=limits)), "order")
