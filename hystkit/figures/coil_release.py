@@ -196,7 +196,7 @@ class CoilReleasePicture(Picture[Releases]):
         self._tags[place].put(left + 18, first)
 
     def _describe(self, data: Releases) -> str:
-        parts = [" ".join(_texts(data, release)).lstrip("! ") for release in data.found]
+        parts = [": ".join(_texts(data, release)).lstrip("! ") for release in data.found]
         rated = "" if data.rated is None else f", the switch is rated {written(data.rated)}"
         return (
             f"Peak on the switch and release time from a supply of "

@@ -161,7 +161,7 @@ def test_every_fault_of_a_coil_is_told_at_once() -> None:
 
 def test_views_of_a_coil_show_its_trade() -> None:
     text = Coil("360", "700m", "12 V", hk.drives.DiodeAndZener(24)).to_text()
-    for shown in ("360 Ω", "700 mH", "36.7 V", "diode and Zener diode"):
+    for shown in ("360 Ω", "700 mH", "36.7 V", "24 V Zener diode"):
         assert shown in text
     assert "none" in Coil("360", "700m", "12 V", clamp=None).to_text()
 

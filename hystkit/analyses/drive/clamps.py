@@ -12,6 +12,7 @@ import numpy as np
 from hystkit.analyses.drive.reading import fill_positive
 from hystkit.base.errors import DesignError, Fault
 from hystkit.base.fields import Field, Viewed
+from hystkit.base.quantity import show
 from hystkit.circuit.reading import Quantity
 
 
@@ -25,8 +26,11 @@ class Clamp(Viewed):
 
     #: Whether the coil's current flows through the supply too while it decays.
     through_supply = False
-    #: What stands in a table.
-    title = ""
+
+    @property
+    @abstractmethod
+    def title(self) -> str:
+        """What stands in a table."""
 
     @abstractmethod
     def opposing(self, supply: float) -> tuple[float, float]:
@@ -60,10 +64,14 @@ class Diode(Clamp):
     """
 
     v_f: float = 0.7
-    title = "diode"
 
     def __init__(self, v_f: Quantity = 0.7) -> None:
         _filled(self, {"v_f": (v_f, "V")})
+
+    @property
+    def title(self) -> str:
+        """What stands in a table."""
+        return "diode"
 
     def opposing(self, supply: float) -> tuple[float, float]:
         """Give what opposes the current of the coil; see `Clamp.opposing`.
@@ -104,10 +112,14 @@ class DiodeAndZener(Clamp):
 
     v_z: float
     v_f: float = 0.7
-    title = "diode and Zener diode"
 
     def __init__(self, v_z: Quantity, v_f: Quantity = 0.7) -> None:
         _filled(self, {"v_z": (v_z, "V"), "v_f": (v_f, "V")})
+
+    @property
+    def title(self) -> str:
+        """What stands in a table."""
+        return f"diode and {show(self.v_z, 'V')} Zener diode"
 
     def opposing(self, supply: float) -> tuple[float, float]:
         """Give what opposes the current of the coil; see `Clamp.opposing`.
@@ -147,10 +159,14 @@ class DiodeAndResistor(Clamp):
 
     resistance: float
     v_f: float = 0.7
-    title = "diode and resistor"
 
     def __init__(self, resistance: Quantity, v_f: Quantity = 0.7) -> None:
         _filled(self, {"resistance": (resistance, "Ω"), "v_f": (v_f, "V")})
+
+    @property
+    def title(self) -> str:
+        """What stands in a table."""
+        return f"diode and {show(self.resistance, 'Ω')}"
 
     def opposing(self, supply: float) -> tuple[float, float]:
         """Give what opposes the current of the coil; see `Clamp.opposing`.
@@ -190,10 +206,14 @@ class ClampAtSwitch(Clamp):
 
     voltage: float
     through_supply = True
-    title = "clamp across the switch"
 
     def __init__(self, voltage: Quantity) -> None:
         _filled(self, {"voltage": (voltage, "V")})
+
+    @property
+    def title(self) -> str:
+        """What stands in a table."""
+        return f"{show(self.voltage, 'V')} across the switch"
 
     def opposing(self, supply: float) -> tuple[float, float]:
         """Give what opposes the current of the coil; see `Clamp.opposing`.
