@@ -4,6 +4,9 @@ from __future__ import annotations
 
 import math
 
+#: Lengths of what is shown are of these times a power of ten, so that they seldom change.
+_ROUND = (1.0, 1.2, 1.5, 2.0, 2.5, 3.0, 4.0, 5.0, 6.0, 8.0, 10.0)
+
 
 def trip_digits(value: float, width: float, most: int = 7) -> int:
     """Return with how many digits a trip is written so that the width stays visible in it.
@@ -93,3 +96,25 @@ def rounded(value: float, digits: int) -> float:
         What the digits written down read back as.
     """
     return float(f"{value:.{digits - 1}e}")
+
+
+def rounded_up(value: float) -> float:
+    """Return the next of some round numbers.
+
+    Parameters
+    ----------
+    value : float
+        Above 0.
+
+    Returns
+    -------
+    float
+        Not below it.
+
+    Examples
+    --------
+    >>> rounded_up(1.3), rounded_up(700.0)
+    (1.5, 800.0)
+    """
+    power = 10.0 ** math.floor(math.log10(value))
+    return float(next(f for f in _ROUND if f * power >= value * (1 - 1e-9)) * power)

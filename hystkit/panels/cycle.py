@@ -136,13 +136,13 @@ class CyclePanel(AskingPanel):
                 f"time that the load stays {label}, kept by a timer [s]",
                 partial(_read_hold, label),
                 _write_hold,
-                "no timer, s",
+                "no timer",
             )
             for name, label in holds
         ]
         starts = "starts per hour that the load stands at most"
         rows += [
-            self._optional("starts_per_hour", "starts per h", starts, "", "any"),
+            self._optional("starts_per_hour", "starts per h", starts, "", "not asked"),
             self._optional("operations", "operations", "rating of the contact", "", "not rated"),
             Asked(
                 desk,

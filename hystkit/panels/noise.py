@@ -151,16 +151,16 @@ class NoisePanel(AskingPanel):
             Asked(
                 desk,
                 "probability",
-                "allowed",
-                "probability of more than one transition that is allowed on a passage",
+                "allowed share",
+                "allowed probability of a further transition per passage",
                 _read_probability,
                 lambda value: f"{value:.9g}",
             ),
             Chosen(desk, "load", "load is on at", _STATES),
         ]
-        self.asked = RequestSection(
-            desk, "Passage", rows, lambda: self.request, [self.sample_button]
-        )
+        # In a row of its own, or it would be as wide as the column.
+        foot = desk.kit.make(widgets.HBox, "chips", children=[self.sample_button])
+        self.asked = RequestSection(desk, "Passage", rows, lambda: self.request, [foot])
         return (self.noise_section, self.asked)
 
     def _figure(self, width_px: int) -> PictureView[Any]:

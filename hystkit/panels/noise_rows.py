@@ -28,12 +28,12 @@ _FIRST_HUM = 10e-3
 _HOUR = 3600.0
 #: Label, accessible name and unit of every number that has a slider.
 _ROWS = {
-    "rms": ("rms", "noise on the signal, rms", "V"),
-    "f1": ("pole", "corner frequency of the filter", "Hz"),
-    "f2": ("second pole", "second corner frequency, that of the device", "Hz"),
-    "bandwidth": ("bandwidth", "highest frequency of the noise", "Hz"),
-    "slope": ("slope", "slope of the signal at the trips, volts per second", "V/s"),
-    "hum_amplitude": ("hum", "amplitude of hum on the signal, empty for none", "V"),
+    "rms": ("noise, rms", "rms of the noise on the signal [V]", "V"),
+    "f1": ("pole", "corner frequency of the filter [Hz]", "Hz"),
+    "f2": ("second pole", "second corner frequency, that of the device [Hz]", "Hz"),
+    "bandwidth": ("bandwidth", "highest frequency of the noise [Hz]", "Hz"),
+    "slope": ("slope", "slope of the signal at the trips [V/s]", "V/s"),
+    "hum_amplitude": ("hum", "amplitude of hum on the signal [V], empty for none", "V"),
 }
 
 
@@ -57,7 +57,7 @@ class NoiseSection:
             desk,
             "hum_frequency",
             "hum at",
-            "frequency of the hum",
+            "frequency of the hum [Hz]",
             _read_frequency,
             partial(_write, "Hz"),
         )

@@ -39,6 +39,13 @@ CSS = """
 .hystkit-panel .hystkit-slider { overflow: visible; }
 .hystkit-panel .hystkit-slider .widget-label { text-align: left; color: var(--hk-text); }
 .hystkit-panel .hystkit-slider .slider-container { margin: 0 8px; min-width: 0; }
+/* The host draws its arrow in black, on a dark page as well. */
+.hystkit-panel .widget-dropdown > select {
+  background-image: linear-gradient(45deg, transparent 50%, var(--hk-text) 50%),
+    linear-gradient(135deg, var(--hk-text) 50%, transparent 50%);
+  background-position: right 11px center, right 6px center; background-size: 5px 5px;
+  background-repeat: no-repeat;
+}
 .hystkit-panel .hystkit-field input, .hystkit-panel .hystkit-field select {
   height: 26px; border-radius: 4px; padding: 2px 6px; min-width: 0;
   font-variant-numeric: tabular-nums;

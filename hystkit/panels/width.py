@@ -18,6 +18,7 @@ from hystkit.numeric.trips import TripPoints
 from hystkit.numeric.views import Levels
 from hystkit.panels.asking import Asked, AskingPanel, Chosen, RequestSection
 from hystkit.panels.base import Section
+from hystkit.panels.cycle_request import numbers_of
 from hystkit.panels.cycle_rows import PlantSection
 from hystkit.panels.desk import Changes, Desk, why
 from hystkit.panels.entries import Note
@@ -119,7 +120,8 @@ class WindowPanel(AskingPanel):
         numbers = {name: changes.pop(name) for name in list(changes) if name in PLANT_NUMBERS}
         if numbers:
             plant = changes.get("plant", request.plant)
-            changes["plant"] = edited_plant(plant, numbers, self.design, request.load)
+            kept = {**self._numbers, **({} if plant is None else numbers_of(plant))}
+            changes["plant"] = edited_plant(kept, numbers, self.design, request.load)
         if NOISE_RMS in changes:
             noise = changes.get("noise", request.noise) or self._last_noise
             changes["noise"] = edited_noise(noise, changes.pop(NOISE_RMS))
@@ -127,6 +129,8 @@ class WindowPanel(AskingPanel):
 
     def _first_request(self) -> WindowRequest:
         self._last_noise: Noise | None = None
+        # Of every kind of plant that was shown, so that they are there again when it is chosen.
+        self._numbers: dict[str, Any] = {}
         return WindowRequest()
 
     def _checked(self, design: Design, request: WindowRequest) -> WindowRequest:
@@ -137,6 +141,8 @@ class WindowPanel(AskingPanel):
             # A design without trips can be mended; what is asked of it is kept.
             self._ran = _Run(design, request, None, why(error))
         self._last_noise = request.noise or self._last_noise
+        if request.plant is not None:
+            self._numbers |= numbers_of(request.plant)
         return request
 
     def _own_sections(self) -> Sequence[Section]:

@@ -151,18 +151,19 @@ def plant_request(plant: Plant) -> CycleRequest:
 
 
 def edited_plant(
-    plant: Plant | None, numbers: Mapping[str, Any], design: Design, load: str
+    kept: Mapping[str, Any], numbers: Mapping[str, Any], design: Design, load: str
 ) -> Plant:
     """Give a plant with other numbers, or of another kind.
 
     Parameters
     ----------
-    plant : Plant or None
-        To begin with; None for a lag that suits the band.
+    kept : mapping
+        Fields of a `CycleRequest` to begin with, as `numbers_of` gives them; empty for a lag that
+        suits the band.
     numbers : mapping
         Of `PLANT_NUMBERS`.
     design : Design
-        Gives the unit, and the numbers that the plant does not have.
+        Gives the unit, and the numbers that are not kept.
     load : {"high", "low"}
         Output state in which the load is on.
 
@@ -176,8 +177,8 @@ def edited_plant(
     PlantError
         Naming everything that cannot be used.
     """
-    own = {} if plant is None else numbers_of(plant)
-    request = CycleRequest(**{**begun_with(first_plant(design, load)), **own, **numbers})
+    first = begun_with(first_plant(design, load))
+    request = CycleRequest(**{**first, **kept, **numbers})
     return request.plant(unit_of(design))
 
 
@@ -213,7 +214,8 @@ def edited_noise(noise: Noise | None, rms: Quantity | None) -> Noise | None:
             remedy='panel.set(noise=hk.Noise.two_pole(rms="1m", f1=10, f2="100k"))',
         )
         raise InputError.of("this entry", [fault])
-    return noise.scaled(strength / noise.rms)
+    # The product of the quotient may be a last digit off what was typed.
+    return replace(noise.scaled(strength / noise.rms), rms=strength)
 
 
 def unit_of(design: Design) -> str:
@@ -264,7 +266,7 @@ def disturbance_entries() -> list[Entry]:
     """
     return [
         _number(NOISE_RMS, "noise, rms", "rms of the noise on the signal [V]", "V"),
-        _number("probability", "allowed",
+        _number("probability", "allowed share",
                 "allowed probability of a further transition per passage", "", "0.001"),
         _number("slope", "slope", "slope of the signal at the trips [V/s]", "V/s", "by the plant"),
         Entry("hum", "hum", "amplitude and frequency of hum, such as 30 mV, 100 Hz",
@@ -296,7 +298,8 @@ def requirement_entries(unit: Callable[[], str]) -> list[Entry]:
         )
 
     return [
-        _number("starts_per_hour", "starts per h", "starts per hour, at most", ""),
+        _number("starts_per_hour", "starts per h",
+                "starts per hour that the load stands at most", ""),
         _number("min_on", "on at least", "shortest time that the load stays on [s]", "s"),
         _number("min_off", "off at least", "shortest time that the load stays off [s]", "s"),
         quantity("swing", "swing", "largest swing of the process value"),

@@ -24,7 +24,7 @@ from hystkit.circuit.reading import Quantity, collect, is_kind, wrong_kind
 from hystkit.numeric.levels import levels
 from hystkit.numeric.measurand import load_edges
 from hystkit.numeric.views import Levels
-from hystkit.review.axis import Axis
+from hystkit.review.axis import Axis, unit_faults
 from hystkit.review.cycling_run import Control, Disturbances
 
 Array = NDArray[np.float64]
@@ -327,15 +327,8 @@ def _checked(
                 remedy="one value of each, or hk.steady_cycle for all of them",
             )
         )
-    elif plant.unit not in ("", unit):
-        faults.append(
-            Fault(
-                "plant and trips are in different units.",
-                have=f"the plant in {plant.unit}, the trips in {unit or 'no unit'}",
-                rule="the plant is in the unit of the signal, or in volts without one",
-                remedy="unit=... of the plant, or signal=... of the design",
-            )
-        )
+    else:
+        faults += unit_faults(plant, unit)
     if faults:
         raise InputError.of("this cycle", faults)
     return read_times

@@ -2,7 +2,6 @@
 
 from __future__ import annotations
 
-import math
 from collections.abc import Sequence
 from dataclasses import dataclass
 from typing import Any, NamedTuple
@@ -15,6 +14,7 @@ from hystkit.analyses.cycle.result import Cycle
 from hystkit.analyses.cycle.run import Run
 from hystkit.analyses.cycle.simulate import simulate
 from hystkit.analyses.cycle.status import CycleStatus
+from hystkit.base.digits import rounded_up
 from hystkit.circuit.reading import Quantity
 
 #: Periods that are shown at least.
@@ -25,8 +25,6 @@ _CONSTANTS, _FROM_START, _MOST = 2.0, 3.0, 12.0
 _SETTLING = (1, 3, 6)
 #: Time constants after which nothing more is to be seen of a plant that sticks.
 _STUCK = 4.0
-#: Lengths of time that are shown are of these times a power of ten, so that they seldom change.
-_ROUND = (1.0, 1.2, 1.5, 2.0, 2.5, 3.0, 4.0, 5.0, 6.0, 8.0, 10.0)
 #: For a plant that neither moves nor settles [s].
 _ANY_TIME = 600.0
 
@@ -94,7 +92,7 @@ class Control:
 
     def _steady(self) -> Shown:
         period = float(self.cycle.period)
-        length = _rounded_up(_PERIODS * period)
+        length = rounded_up(_PERIODS * period)
         order = self.plant.dynamics.order
         settling = _SETTLING[min(order, len(_SETTLING)) - 1]
         until = (settling + 1.1) * period + length
@@ -108,7 +106,7 @@ class Control:
     def _stuck(self, status: CycleStatus) -> Shown:
         """Run from the trip that is passed last to where the plant sticks."""
         off = status is CycleStatus.STAYS_OFF
-        until = _rounded_up(_STUCK * self._slowest())
+        until = rounded_up(_STUCK * self._slowest())
         if self.plant.dynamics.order < len(_SETTLING) and status is not CycleStatus.UNPROVED:
             run = self._run(until, start=self.off_at if off else self.on_at, start_on=off)
         else:
@@ -129,10 +127,10 @@ class Control:
 
     def _length_from_start(self) -> float:
         if not self.cycle.ok:
-            return _rounded_up(_STUCK * self._slowest())
+            return rounded_up(_STUCK * self._slowest())
         period = float(self.cycle.period)
         whole = _CONSTANTS * self._slowest() + _FROM_START * period
-        return _rounded_up(min(whole, _MOST * period))
+        return rounded_up(min(whole, _MOST * period))
 
     def _slowest(self) -> float:
         """Give the longest time constant, or without one the time that the band takes [s]."""
@@ -150,8 +148,3 @@ class Control:
         """Give the state at rest, or zero of a plant that never comes to rest."""
         found = self.plant.dynamics.settled(on)
         return np.where(np.isnan(found), 0.0, found)
-
-
-def _rounded_up(time: float) -> float:
-    power = 10.0 ** math.floor(math.log10(time))
-    return float(next(f for f in _ROUND if f * power >= time * (1 - 1e-9)) * power)

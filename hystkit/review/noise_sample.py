@@ -11,6 +11,7 @@ from numpy.typing import NDArray
 
 from hystkit.analyses.noise.chatter import Chatter
 from hystkit.analyses.noise.model import Noise
+from hystkit.base.digits import rounded_up
 from hystkit.numeric.switching import simulate_switch
 from hystkit.numeric.views import Levels
 
@@ -23,8 +24,6 @@ PER_CROSSING, PER_PERIOD = 20, 40
 LEAST, MOST = 1_000, 2**17
 #: First transitions lie within so many of their standard deviations.
 _REACH = 4.0
-#: Lengths of time are of these times a power of ten, so that they seldom change.
-_ROUND = (1.0, 1.2, 1.5, 2.0, 2.5, 3.0, 4.0, 5.0, 6.0, 8.0, 10.0)
 
 
 @dataclass(frozen=True, eq=False)
@@ -143,28 +142,6 @@ def passing(levels: Levels, found: Chatter, hum: Hum | None = None, seed: int = 
         signal += hum[0] * np.sin(2 * np.pi * hum[1] * time + phase)
     above = simulate_switch(signal, levels.upper, levels.lower, start=False)
     return NoiseSample(time, ramp, signal, above, rate < wanted * (1 - 1e-9))
-
-
-def rounded_up(value: float) -> float:
-    """Return the next of some round numbers.
-
-    Parameters
-    ----------
-    value : float
-        Above 0.
-
-    Returns
-    -------
-    float
-        Not below it.
-
-    Examples
-    --------
-    >>> rounded_up(1.3), rounded_up(700.0)
-    (1.5, 800.0)
-    """
-    power = 10.0 ** math.floor(math.log10(value))
-    return float(next(f for f in _ROUND if f * power >= value * (1 - 1e-9)) * power)
 
 
 @lru_cache(maxsize=4)

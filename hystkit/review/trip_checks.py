@@ -223,9 +223,8 @@ def share_of_width(name: str, text: str, move: float, width: float, remedy: str)
     if move <= allowed:
         return Finding(name, "pass", text, allowed - move, "V")
     severity = "fault" if move >= width else "warning"
-    return Finding(
-        name, severity, f"{text}: {move / width:.0%} of the width", allowed - move, "V", remedy
-    )
+    text = f"{text}: {100 * move / width:.0f} % of the width"
+    return Finding(name, severity, text, allowed - move, "V", remedy)
 
 
 TRIP_CHECKS: tuple[Check, ...] = (order, offset, bias, supply)

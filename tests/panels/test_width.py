@@ -136,6 +136,14 @@ def test_the_strength_of_the_noise_is_typed(make: Make) -> None:
     assert panel.request.noise.rms == pytest.approx(5e-3)
 
 
+@pytest.mark.parametrize("text", ["7 mV", "9 mV", "13 mV", "14 mV"])
+def test_the_strength_of_the_noise_stands_as_typed(make: Make, text: str) -> None:
+    """Scaling 5 mV by the quotient would end beside each of these by a last digit."""
+    row = make(plant=TANK, noise=NOISE).disturbances.rows["noise_rms"]
+    type_in(row.field, text)
+    assert row.field.value == text
+
+
 def test_noise_has_to_be_given_before_its_strength(make: Make) -> None:
     panel = make(plant=TANK)
     row = panel.disturbances.rows["noise_rms"]
@@ -162,6 +170,16 @@ def test_numbers_of_the_plant_are_moved_and_typed(make: Make) -> None:
     panel.set(kind="lag", tau=900, on_level=4, off_level=-1.5)
     assert panel.request.plant == hk.FirstOrder(900, 4, -1.5, dead_time=(40, 20), unit="m")
     assert panel.error == ""
+
+
+def test_numbers_of_another_kind_are_there_again(make: Make) -> None:
+    panel = make(plant=TANK, starts_per_hour=3)
+    bounds = widths(panel)
+    choice = panel.plant_section.plant.kind.field
+    for kind in ("one lag", "two lags", "integrating"):
+        send(choice, index=list(choice.options).index(kind))
+    assert panel.request.plant == hk.Integrating(2e-3, -1e-3, dead_time=20, unit="m")
+    assert widths(panel) == bounds
 
 
 def test_the_plant_goes_and_comes_back(make: Make) -> None:

@@ -8,9 +8,10 @@ import numpy as np
 import pytest
 
 import hystkit as hk
+from hystkit.base.digits import rounded_up
 from hystkit.base.errors import InputError
 from hystkit.circuit.demo import header_tank
-from hystkit.review.noise_sample import MOST, rounded_up
+from hystkit.review.noise_sample import MOST
 from hystkit.review.noise_scene import first_noise, first_slope, noise_scene
 
 NOISE = hk.Noise.two_pole(rms="50m", f1=100, f2="10k")

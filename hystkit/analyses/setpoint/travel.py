@@ -58,7 +58,10 @@ class Setting(Viewed):
         return [
             Field(f"{self.kind} set to", self.value, "V"),
             Field(
-                "setting", f"{self.position:.1%}", "", f"{low:.1%} to {high:.1%} with tolerances"
+                "setting",
+                show(self.position, "%", 3),
+                "",
+                f"{show(low, '%', 3)} to {show(high, '%', 3)} with tolerances",
             ),
             *(Field(kind, pair, "V") for kind, pair in self.after.items() if kind != self.kind),
         ]
