@@ -10,8 +10,8 @@ it, the closer the smaller the box, with an error that falls with the square of 
 References
 ----------
 G. T. Cargo and O. Shisha, The Bernstein form of a polynomial, J. Res. Natl. Bur. Stand. 70B
-(1966), 79-81. J. Garloff, Convergent bounds for the range of multivariate polynomials, Lecture
-Notes in Computer Science 212 (1986), 37-56.
+(1966), 79-81. J. Garloff, Convergent bounds for the range of multivariate polynomials, LNCS 212
+(1986), 37-56.
 """
 
 from __future__ import annotations
