@@ -5,6 +5,7 @@ from __future__ import annotations
 import os
 import platform
 import sys
+from dataclasses import replace
 
 from tests.benchmarks import (
     cycle,
@@ -18,15 +19,19 @@ from tests.benchmarks import (
     spread,
     window_panel,
 )
+from tests.benchmarks.measure import slowness
 
 
 def main() -> int:
     machine = f"Python {platform.python_version()}, {os.cpu_count()} cores"
-    print(f"{machine}; processor times, medians of one run\n")
+    slower = slowness()
+    print(f"{machine}; processor times, medians of one run")
+    print(f"limits in time are taken times {slower:.2f}, by which this machine is slower\n")
     missed = 0
     panels = (noise_panel, cycle_panel, window_panel)
     for benchmark in (imports, forms, slider, spread, sizing, cycle, noise, *panels):
-        for comparison in benchmark.comparisons():
+        for found in benchmark.comparisons():
+            comparison = replace(found, slower=slower)
             print(comparison, flush=True)
             missed += not comparison.passed
     if missed:

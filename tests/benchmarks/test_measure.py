@@ -2,9 +2,11 @@
 
 from __future__ import annotations
 
+from dataclasses import replace
+
 import pytest
 
-from tests.benchmarks.measure import Comparison, alternating, in_fresh_process, shown
+from tests.benchmarks.measure import Comparison, alternating, in_fresh_process, shown, slowness
 
 
 def test_ratio_and_verdict() -> None:
@@ -17,6 +19,14 @@ def test_ratio_and_verdict() -> None:
     assert not Comparison("import", 0.2, "other", 1.0, limit=0.15).passed
     assert Comparison("import", 0.1, "other", 1.0, limit=0.15).passed
     assert "FAIL" in str(Comparison("import", 0.2, "other", 1.0, limit=0.15))
+
+
+def test_a_limit_in_time_grows_with_a_slower_machine_and_a_ratio_does_not() -> None:
+    late = Comparison("move", 0.12, "afresh", 0.2, limit=0.1, slower=1.3)
+    assert late.passed
+    assert not replace(late, slower=1.1).passed
+    assert not replace(late, at_least=2.0).passed
+    assert slowness() >= 1.0
 
 
 def test_shown_in_the_fitting_unit() -> None:

@@ -18,7 +18,7 @@ TOGETHER = "all disturbances"
 NAMES = ("noise", "hum", "load step", TOGETHER)
 #: The width follows from the slope and the slope from the width; what is left of a change this
 #: small, as a share, is a hundred times smaller.
-_SETTLED = 1e-4
+_SETTLED = 1e-3
 _ROUNDS = 50
 
 Share = Callable[[float], float]
