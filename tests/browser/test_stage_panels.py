@@ -127,6 +127,8 @@ def test_a_window_is_typed_and_a_candidate_adopted(page: Page) -> None:
         holds(page, "sizing", name, written)
     page.locator(".sizing button", has_text="search").click()
     shown(page, "sizing", "combinations searched", ".hystkit-card")
+    # The rows are rendered after the line above them.
+    candidates(page).nth(LISTED - 1).wait_for(timeout=PATIENCE)
     tank = header_tank()
     found = hk.size(tank.stage, supply=tank.supply, device=tank.device, signal=tank.signal,
                     series="E24", count=LISTED, **WANTED)  # fmt: skip
